@@ -1,0 +1,91 @@
+// Runs inside V8, beside the toolkit's WebAssembly module. Gives .NET two functions that take and give text.
+// Every toolkit object is deleted where it was made: the garbage collector does not reach the module's memory.
+
+let toolkit = null;
+let log = null;
+let startFailure = null;
+
+// The toolkit's start code asks for these few things of a browser.
+globalThis.window = globalThis;
+globalThis.self = globalThis;
+globalThis.console = { log() {}, info() {}, warn() {}, error() {}, debug() {} };
+globalThis.performance = { now: () => Date.now() };
+
+function qcStart(bytes) {
+  const settings = {
+    locateFile: name => name,
+    print() {},
+    printErr() {},
+    instantiateWasm(imports, done) {
+      WebAssembly.instantiate(bytes, imports).then(
+        result => done(result.instance, result.module),
+        error => { startFailure = String(error); });
+      return {};
+    },
+  };
+  initRDKitModule(settings).then(
+    module => {
+      log = module.set_log_capture("rdApp.error");
+      toolkit = module;
+    },
+    error => { startFailure = String(error); });
+}
+
+// "" while starting, "ready", or why it failed.
+function qcState() {
+  return startFailure ?? (toolkit === null ? "" : "ready");
+}
+
+// A C++ exception of the toolkit is an answer about the input; anything else thrown means the module is not to be trusted.
+const refusalOrThrow = error => {
+  if (error instanceof WebAssembly.Exception) {
+    return JSON.stringify({ refused: log.get_buffer() });
+  }
+  throw error;
+};
+
+const withMolecule = (text, use) => {
+  let molecule = null;
+  try {
+    log.clear_buffer();
+    molecule = toolkit.get_mol(text);
+    return molecule === null ? JSON.stringify({ refused: log.get_buffer() }) : use(molecule);
+  } catch (error) {
+    return refusalOrThrow(error);
+  } finally {
+    molecule?.delete();
+  }
+};
+
+// Whether the text can be read at all, and what the toolkit made of it, before anything is rewritten.
+function qcInspect(text) {
+  return withMolecule(text, molecule => JSON.stringify({ graph: JSON.parse(molecule.get_json()) }));
+}
+
+// Canonical SMILES without hydrogens that only state what valence implies.
+// removeDefiningBondStereo: an imine's hydrogen is counted on its nitrogen, at the price of its E or Z.
+function qcCanonical(text) {
+  return withMolecule(text, molecule => {
+    molecule.remove_hs_in_place(JSON.stringify({ removeDefiningBondStereo: true }));
+    return JSON.stringify({ smiles: molecule.get_smiles() });
+  });
+}
+
+// Everything about a canonical SMILES, in the atom order of that SMILES.
+function qcDescribe(smiles) {
+  return withMolecule(smiles, molecule => {
+    const inchi = molecule.get_inchi();
+    return JSON.stringify({
+      smiles: molecule.get_smiles(),
+      graph: JSON.parse(molecule.get_json()),
+      stereo: JSON.parse(molecule.get_stereo_tags()),
+      inchi,
+      inchiKey: inchi === "" ? "" : toolkit.get_inchikey_for_inchi(inchi),
+      molBlock: molecule.get_molblock(),
+    });
+  });
+}
+
+function qcDraw(text, details) {
+  return withMolecule(text, molecule => JSON.stringify({ svg: molecule.get_svg_with_highlights(details) }));
+}
