@@ -85,7 +85,8 @@ internal sealed class ClusterPlan
 
     /// <summary>
     /// The core and, most important first, the sites that fit. Leaving out a site coupled to the core by J costs its
-    /// lines about J·θ/2 (θ = |J|/√(Δν² + J²), the second-order shift); a site coupled to such a neighbour changes the
+    /// lines about J·θ/2 (θ = |J|/√(Δν² + J²), the second-order shift); the same with the θ of core sites among
+    /// themselves, as their mixing changes with the state of that site. A site coupled to such a neighbour changes the
     /// pattern J by about its own θ with it, and so on along the chain.
     /// </summary>
     private int[] Neighbourhood(int[] core, SpinCoupling[] pairs)
@@ -125,6 +126,13 @@ internal sealed class ClusterPlan
     {
         var splits = new Dictionary<int, double>();
         var importance = new Dictionary<int, double>();
+        var mixing = new Dictionary<int, double>();
+        foreach (SpinCoupling c in pairs.Where(c => core.Contains(c.SiteA) && core.Contains(c.SiteB)))
+        {
+            mixing[c.SiteA] = Math.Max(mixing.GetValueOrDefault(c.SiteA), Strength(c));
+            mixing[c.SiteB] = Math.Max(mixing.GetValueOrDefault(c.SiteB), Strength(c));
+        }
+
         foreach (SpinCoupling c in pairs)
         {
             foreach ((int from, int to) in new[] { (c.SiteA, c.SiteB), (c.SiteB, c.SiteA) })
@@ -132,8 +140,9 @@ internal sealed class ClusterPlan
                 if (core.Contains(from) && !core.Contains(to))
                 {
                     double j = Math.Abs(c.Hertz) * _system.Sites[to].Count;
+                    double theta = Math.Max(Strength(c), mixing.GetValueOrDefault(from));
                     splits[to] = Math.Max(splits.GetValueOrDefault(to), j);
-                    importance[to] = Math.Max(importance.GetValueOrDefault(to), 0.5 * j * Strength(c));
+                    importance[to] = Math.Max(importance.GetValueOrDefault(to), 0.5 * j * theta);
                 }
             }
         }

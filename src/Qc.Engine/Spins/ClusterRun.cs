@@ -30,25 +30,29 @@ internal sealed class ClusterRun(bool[] core, ClusterPair[] pairs, SimulationOpt
 
         double[][]? slopes = lines.RowLength > 0 ? [.. blocks.Select((block, b) => Slopes(block, levels[b]))] : null;
         int slopeLength = _sites + pairs.Length;
-        var amplitudes = new double[_sites];
-        foreach (Candidate c in candidates)
+        for (int start = 0; start < candidates.Count;)
         {
-            SpinBlock block = blocks[c.Block];
-            int site = DominantSite(block, levels, c, amplitudes);
-            if (site < 0)
+            (int b, int upper) = (candidates[start].Block, candidates[start].Upper);
+            double[] lowered = LoweredBySite(blocks[b], blocks[b + 1].Dimension, levels[b], upper);
+            for (; start < candidates.Count && candidates[start].Block == b && candidates[start].Upper == upper; start++)
             {
-                continue;
-            }
-
-            double frequency = levels[c.Block].Energies[c.Upper] - levels[c.Block + 1].Energies[c.Lower];
-            Span<double> row = lines.Add(new Transition(frequency, c.Intensity, site));
-            if (slopes is not null)
-            {
-                ReadOnlySpan<double> upper = slopes[c.Block].AsSpan(c.Upper * slopeLength, slopeLength);
-                ReadOnlySpan<double> lower = slopes[c.Block + 1].AsSpan(c.Lower * slopeLength, slopeLength);
-                for (int p = 0; p < slopeLength; p++)
+                int lower = candidates[start].Lower;
+                int site = DominantSite(lowered, levels[b + 1], lower);
+                if (site < 0)
                 {
-                    row[p] = upper[p] - lower[p];
+                    continue;
+                }
+
+                double frequency = levels[b].Energies[upper] - levels[b + 1].Energies[lower];
+                Span<double> row = lines.Add(new Transition(frequency, candidates[start].Intensity, site));
+                if (slopes is not null)
+                {
+                    ReadOnlySpan<double> above = slopes[b].AsSpan(upper * slopeLength, slopeLength);
+                    ReadOnlySpan<double> below = slopes[b + 1].AsSpan(lower * slopeLength, slopeLength);
+                    for (int p = 0; p < slopeLength; p++)
+                    {
+                        row[p] = above[p] - below[p];
+                    }
                 }
             }
         }
@@ -84,6 +88,7 @@ internal sealed class ClusterRun(bool[] core, ClusterPair[] pairs, SimulationOpt
         return h;
     }
 
+    /// <summary>Every transition worth a look, by block, upper and lower state, and the intensity of all.</summary>
     private List<Candidate> Candidates(SpinBlock[] blocks, Level[] levels, double weight, out double total)
     {
         var candidates = new List<Candidate>();
@@ -94,24 +99,39 @@ internal sealed class ClusterRun(bool[] core, ClusterPair[] pairs, SimulationOpt
         {
             int n = blocks[b].Dimension;
             int m = blocks[b + 1].Dimension;
-            var lowered = new double[m];
-            for (int i = 0; i < n; i++)
+            var lowered = new double[4 * m];
+            var intensities = new double[4 * m];
+            for (int first = 0; first < n; first += 4)
             {
+                int together = Math.Min(4, n - first);
                 Array.Clear(lowered);
-                ReadOnlySpan<double> upper = levels[b].Vectors.AsSpan(i * n, n);
-                foreach (SpinBlock.Lowering step in blocks[b].Lowerings)
+                for (int i = 0; i < together; i++)
                 {
-                    lowered[step.To] += step.Value * upper[step.From];
+                    Span<double> target = lowered.AsSpan(i * m, m);
+                    ReadOnlySpan<double> upper = levels[b].Vectors.AsSpan((first + i) * n, n);
+                    foreach (SpinBlock.Lowering step in blocks[b].Lowerings)
+                    {
+                        target[step.To] += step.Value * upper[step.From];
+                    }
                 }
 
                 for (int f = 0; f < m; f++)
                 {
-                    double amplitude = VectorMath.Dot(levels[b + 1].Vectors.AsSpan(f * m, m), lowered);
-                    double intensity = weight * amplitude * amplitude;
-                    total += intensity;
-                    if (intensity > floor)
+                    (double a0, double a1, double a2, double a3) = VectorMath.Dot4(
+                        levels[b + 1].Vectors.AsSpan(f * m, m),
+                        lowered.AsSpan(0, m), lowered.AsSpan(m, m), lowered.AsSpan(2 * m, m), lowered.AsSpan(3 * m, m));
+                    intensities[f] = weight * a0 * a0;
+                    intensities[m + f] = weight * a1 * a1;
+                    intensities[2 * m + f] = weight * a2 * a2;
+                    intensities[3 * m + f] = weight * a3 * a3;
+                }
+
+                for (int k = 0; k < together * m; k++)
+                {
+                    total += intensities[k];
+                    if (intensities[k] > floor)
                     {
-                        candidates.Add(new Candidate(b, i, f, intensity));
+                        candidates.Add(new Candidate(b, first + k / m, k % m, intensities[k]));
                     }
                 }
             }
@@ -120,43 +140,61 @@ internal sealed class ClusterRun(bool[] core, ClusterPair[] pairs, SimulationOpt
         return candidates;
     }
 
-    /// <summary>Leaves out the weakest lines: each below the limit of one line, all below the limit of all.</summary>
+    /// <summary>
+    /// Leaves out the lines below the limit of one line; if together they would exceed the limit of all, the limit is
+    /// halved until they do not.
+    /// </summary>
     private void DropWeakest(List<Candidate> candidates, double total)
     {
-        candidates.Sort((a, b) => b.Intensity.CompareTo(a.Intensity));
-        double kept = 0;
-        int count = 0;
-        while (count < candidates.Count
-            && (candidates[count].Intensity >= options.DroppedLine * spins || total - kept > options.DroppedInAll * total))
+        double limit = options.DroppedLine * spins;
+        while (limit > double.Epsilon && total - KeptAbove(candidates, limit) > options.DroppedInAll * total)
         {
-            kept += candidates[count++].Intensity;
+            limit /= 2;
         }
 
-        candidates.RemoveRange(count, candidates.Count - count);
+        candidates.RemoveAll(c => c.Intensity < limit);
+    }
+
+    private static double KeptAbove(List<Candidate> candidates, double limit)
+    {
+        double kept = 0;
+        foreach (Candidate c in candidates)
+        {
+            kept += c.Intensity >= limit ? c.Intensity : 0;
+        }
+
+        return kept;
+    }
+
+    /// <summary>I⁻ of each site applied to one state: <c>[site * m …]</c>.</summary>
+    private double[] LoweredBySite(SpinBlock block, int m, Level level, int upper)
+    {
+        var lowered = new double[_sites * m];
+        ReadOnlySpan<double> vector = level.Vectors.AsSpan(upper * block.Dimension, block.Dimension);
+        foreach (SpinBlock.Lowering step in block.Lowerings)
+        {
+            lowered[step.Site * m + step.To] += step.Value * vector[step.From];
+        }
+
+        return lowered;
     }
 
     /// <summary>
     /// The site with the largest squared amplitude ⟨f|I⁻ of the site|i⟩², the first of equals;
-    /// −1 if the core has no more than half of the squares.
+    /// −1 if the core has no more than half of the squares: then the line belongs to another core.
     /// </summary>
-    private int DominantSite(SpinBlock block, Level[] levels, Candidate c, double[] amplitudes)
+    private int DominantSite(double[] lowered, Level level, int lower)
     {
-        int m = levels[c.Block + 1].Energies.Length;
-        ReadOnlySpan<double> upper = levels[c.Block].Vectors.AsSpan(c.Upper * block.Dimension, block.Dimension);
-        ReadOnlySpan<double> lower = levels[c.Block + 1].Vectors.AsSpan(c.Lower * m, m);
-        Array.Clear(amplitudes);
-        foreach (SpinBlock.Lowering step in block.Lowerings)
-        {
-            amplitudes[step.Site] += step.Value * upper[step.From] * lower[step.To];
-        }
-
+        int m = level.Energies.Length;
+        ReadOnlySpan<double> vector = level.Vectors.AsSpan(lower * m, m);
         double sum = 0;
         double coreSum = 0;
         double best = 0;
         int site = -1;
         for (int i = 0; i < _sites; i++)
         {
-            double square = amplitudes[i] * amplitudes[i];
+            double amplitude = VectorMath.Dot(vector, lowered.AsSpan(i * m, m));
+            double square = amplitude * amplitude;
             sum += square;
             if (core[i])
             {
@@ -181,27 +219,33 @@ internal sealed class ClusterRun(bool[] core, ClusterPair[] pairs, SimulationOpt
         int n = block.Dimension;
         int length = _sites + pairs.Length;
         var slopes = new double[n * length];
+        var squares = new double[n];
+        var products = new double[pairs.Length * n];
+        for (int p = 0; p < pairs.Length; p++)
+        {
+            for (int b = 0; b < n; b++)
+            {
+                products[p * n + b] = block.M[pairs[p].A * n + b] * block.M[pairs[p].B * n + b];
+            }
+        }
+
         for (int state = 0; state < n; state++)
         {
             ReadOnlySpan<double> v = level.Vectors.AsSpan(state * n, n);
             Span<double> slope = slopes.AsSpan(state * length, length);
+            for (int b = 0; b < n; b++)
+            {
+                squares[b] = v[b] * v[b];
+            }
+
             for (int i = 0; i < _sites; i++)
             {
-                ReadOnlySpan<double> m = block.M.AsSpan(i * n, n);
-                for (int b = 0; b < n; b++)
-                {
-                    slope[i] += v[b] * v[b] * m[b];
-                }
+                slope[i] = VectorMath.Dot(squares, block.M.AsSpan(i * n, n));
             }
 
             for (int p = 0; p < pairs.Length; p++)
             {
-                ReadOnlySpan<double> mA = block.M.AsSpan(pairs[p].A * n, n);
-                ReadOnlySpan<double> mB = block.M.AsSpan(pairs[p].B * n, n);
-                for (int b = 0; b < n; b++)
-                {
-                    slope[_sites + p] += v[b] * v[b] * mA[b] * mB[b];
-                }
+                slope[_sites + p] = VectorMath.Dot(squares, products.AsSpan(p * n, n));
             }
 
             foreach (SpinBlock.FlipFlop flip in block.FlipFlops)

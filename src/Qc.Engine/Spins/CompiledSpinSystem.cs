@@ -80,21 +80,33 @@ public sealed class CompiledSpinSystem
         ArgumentOutOfRangeException.ThrowIfNotEqual(frequencies.Length, SiteCount);
         ArgumentOutOfRangeException.ThrowIfNotEqual(couplings.Length, CouplingCount);
         var evaluated = new LineBuffer[_clusters.Length];
-        var origin = new List<(Transition Line, int Cluster, int Place)>();
+        var origin = new List<(int Cluster, int Place)>();
         for (int c = 0; c < _clusters.Length; c++)
         {
-            SpinCluster cluster = _clusters[c];
-            evaluated[c] = cluster.Evaluate(frequencies, couplings, _options, derivatives);
+            evaluated[c] = EvaluateOnce(c, frequencies, couplings, evaluated, derivatives);
             for (int i = 0; i < evaluated[c].Count; i++)
             {
-                Transition line = evaluated[c][i];
-                origin.Add((line with { Site = cluster.Sites[line.Site] }, c, i));
+                origin.Add((c, i));
             }
         }
 
-        origin.Sort((a, b) =>
-            (a.Line.FrequencyHertz, a.Cluster, a.Place).CompareTo((b.Line.FrequencyHertz, b.Cluster, b.Place)));
-        Transition[] lines = [.. origin.Select(o => o.Line)];
+        var order = new int[origin.Count];
+        var keys = new double[origin.Count];
+        for (int i = 0; i < order.Length; i++)
+        {
+            order[i] = i;
+            keys[i] = evaluated[origin[i].Cluster][origin[i].Place].FrequencyHertz;
+        }
+
+        Array.Sort(keys, order);
+        var lines = new Transition[order.Length];
+        for (int i = 0; i < order.Length; i++)
+        {
+            (int c, int place) = origin[order[i]];
+            Transition line = evaluated[c][place];
+            lines[i] = line with { Site = _clusters[c].Sites[line.Site] };
+        }
+
         if (!derivatives)
         {
             return new LineGradients(lines, 0, 0, [], []);
@@ -104,7 +116,7 @@ public sealed class CompiledSpinSystem
         var byCoupling = new double[lines.Length * CouplingCount];
         for (int line = 0; line < lines.Length; line++)
         {
-            (_, int c, int place) = origin[line];
+            (int c, int place) = origin[order[line]];
             ReadOnlySpan<double> row = evaluated[c].Row(place);
             SpinCluster cluster = _clusters[c];
             for (int i = 0; i < cluster.Sites.Length; i++)
@@ -119,5 +131,20 @@ public sealed class CompiledSpinSystem
         }
 
         return new LineGradients(lines, SiteCount, CouplingCount, bySite, byCoupling);
+    }
+
+    /// <summary>A cluster that equals an earlier one in structure and values has the same lines.</summary>
+    private LineBuffer EvaluateOnce(
+        int c, ReadOnlySpan<double> frequencies, ReadOnlySpan<double> couplings, LineBuffer[] evaluated, bool derivatives)
+    {
+        for (int earlier = 0; earlier < c; earlier++)
+        {
+            if (_clusters[c].Equals(_clusters[earlier], frequencies, couplings))
+            {
+                return evaluated[earlier];
+            }
+        }
+
+        return _clusters[c].Evaluate(frequencies, couplings, _options, derivatives);
     }
 }

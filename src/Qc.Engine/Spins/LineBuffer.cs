@@ -49,50 +49,57 @@ internal sealed class LineBuffer(int rowLength)
     }
 
     /// <summary>
-    /// The lines ordered by site and frequency, those of one site that lie within <paramref name="hertz"/> of the first
+    /// The lines ordered by frequency, those of one site that lie within <paramref name="hertz"/> of the first
     /// of their bunch made one: intensities add, frequency and row become the intensity-weighted mean.
     /// </summary>
     public LineBuffer Merged(double hertz)
     {
         var order = new int[Count];
-        var keys = new (int Site, double Frequency, int Index)[Count];
+        var frequencies = new double[Count];
+        int sites = 0;
         for (int i = 0; i < Count; i++)
         {
             order[i] = i;
-            keys[i] = (_lines[i].Site, _lines[i].FrequencyHertz, i);
+            frequencies[i] = _lines[i].FrequencyHertz;
+            sites = Math.Max(sites, _lines[i].Site + 1);
         }
 
-        Array.Sort(keys, order);
+        Array.Sort(frequencies, order);
+
+        // While the lines pass in order, each site has at most one bunch that can still grow.
         var merged = new LineBuffer(rowLength);
-        for (int start = 0; start < order.Length;)
+        var bunch = new int[sites];
+        var first = new double[sites];
+        Array.Fill(bunch, -1);
+        foreach (int index in order)
         {
-            Transition first = _lines[order[start]];
-            int end = start + 1;
-            double intensity = first.Intensity;
-            double moment = 0;
-            while (end < order.Length && _lines[order[end]].Site == first.Site
-                && _lines[order[end]].FrequencyHertz - first.FrequencyHertz <= hertz)
+            Transition line = _lines[index];
+            if (bunch[line.Site] >= 0 && line.FrequencyHertz - first[line.Site] <= hertz)
             {
-                Transition next = _lines[order[end]];
-                intensity += next.Intensity;
-                moment += next.Intensity * (next.FrequencyHertz - first.FrequencyHertz);
-                end++;
+                merged.Blend(bunch[line.Site], line, Row(index));
             }
-
-            Span<double> row = merged.Add(new Transition(first.FrequencyHertz + moment / intensity, intensity, first.Site));
-            for (int k = start; k < end; k++)
+            else
             {
-                double share = _lines[order[k]].Intensity / intensity;
-                ReadOnlySpan<double> part = Row(order[k]);
-                for (int p = 0; p < row.Length; p++)
-                {
-                    row[p] += share * part[p];
-                }
+                bunch[line.Site] = merged.Count;
+                first[line.Site] = line.FrequencyHertz;
+                Row(index).CopyTo(merged.Add(line));
             }
-
-            start = end;
         }
 
         return merged;
+    }
+
+    private void Blend(int target, Transition line, ReadOnlySpan<double> lineRow)
+    {
+        Transition old = _lines[target];
+        double intensity = old.Intensity + line.Intensity;
+        double share = line.Intensity / intensity;
+        double frequency = old.FrequencyHertz + share * (line.FrequencyHertz - old.FrequencyHertz);
+        _lines[target] = new Transition(frequency, intensity, old.Site);
+        Span<double> row = WritableRow(target);
+        for (int p = 0; p < row.Length; p++)
+        {
+            row[p] += share * (lineRow[p] - row[p]);
+        }
     }
 }

@@ -13,10 +13,10 @@ public sealed record SimulationOptions
     public int LargestExactBlock { get; init; } = 1000;
 
     /// <summary>
-    /// Largest block of one neighbourhood of a split cluster. 126 admits 9 distinct spins. A neighbourhood always
+    /// Largest block of one neighbourhood of a split cluster. 70 admits 8 distinct spins. A neighbourhood always
     /// holds its whole strongly coupled core, even if that alone is larger than this.
     /// </summary>
-    public int LargestNeighbourhoodBlock { get; init; } = 126;
+    public int LargestNeighbourhoodBlock { get; init; } = 70;
 
     /// <summary>Lines of one site closer than this, in Hz, become one line at their weighted mean. 0 keeps all apart.</summary>
     public double MergeHertz { get; init; } = 1e-6;
@@ -28,5 +28,5 @@ public sealed record SimulationOptions
     public double DroppedLine { get; init; } = 1e-5;
 
     /// <summary>Largest share of the intensity of a cluster that may be left out in all.</summary>
-    public double DroppedInAll { get; init; } = 2e-4;
+    public double DroppedInAll { get; init; } = 5e-4;
 }

@@ -13,6 +13,7 @@ internal sealed record StaticSite(int Count, (int Site, int Coupling)[] Links);
 /// </summary>
 internal sealed class SpinCluster
 {
+    private readonly int[] _counts;
     private readonly bool[] _core;
     private readonly int _spins;
     private readonly int _coreSpins;
@@ -33,6 +34,7 @@ internal sealed class SpinCluster
         Pairs = pairs;
         Shifting = shifting;
         Splitting = splitting;
+        _counts = counts;
         _core = core;
         _spins = counts.Sum();
         _coreSpins = counts.Where((_, i) => core[i]).Sum();
@@ -112,6 +114,40 @@ internal sealed class SpinCluster
         lines.Normalise(_coreSpins);
         return lines;
     }
+
+    /// <summary>Whether another cluster has the same structure, and the same values here.</summary>
+    public bool Equals(SpinCluster other, ReadOnlySpan<double> frequencies, ReadOnlySpan<double> couplings)
+    {
+        for (int i = 0; i < Math.Min(Sites.Length, other.Sites.Length); i++)
+        {
+            if (frequencies[Sites[i]] != frequencies[other.Sites[i]])
+            {
+                return false;
+            }
+        }
+
+        if (!_counts.AsSpan().SequenceEqual(other._counts) || !_core.AsSpan().SequenceEqual(other._core)
+            || !Structure.SequenceEqual(other.Structure))
+        {
+            return false;
+        }
+
+        for (int k = 0; k < RowCouplings.Length; k++)
+        {
+            if (couplings[RowCouplings[k]] != couplings[other.RowCouplings[k]])
+            {
+                return false;
+            }
+        }
+
+        return true;
+    }
+
+    /// <summary>Who couples to whom, by places: pairs, then the sites outside with their counts.</summary>
+    private IEnumerable<(int, int)> Structure =>
+        Pairs.Select(p => (p.A, p.B))
+            .Append((Shifting.Length, Splitting.Length))
+            .Concat(Shifting.Concat(Splitting).SelectMany(s => s.Links.Select(l => (s.Count, l.Site)).Append((-1, -1))));
 
     private void FillShiftingLinks(LineBuffer lines, int first, double[] m)
     {
