@@ -60,6 +60,9 @@ internal sealed class EnvironmentPattern
         }
     }
 
+    /// <summary>How much the pattern says: two for an atom, one for a property.</summary>
+    public int Detail => _atoms.Sum(atom => 2 + atom.Properties.Length);
+
     /// <summary>
     /// All ways to lay the pattern on the molecule with its root at <paramref name="root"/>, atoms in written order.
     /// The walk never goes to <paramref name="from"/> (the atom that a substituent hangs on; -1 for none).

@@ -1,0 +1,83 @@
+using System.Collections.Immutable;
+using Qc.Engine.Prediction.Environments;
+
+namespace Qc.Engine.Prediction;
+
+/// <summary>
+/// Protons on aromatic carbon: benzenes by base + ortho + meta + para increments; other rings from the parent's shift in
+/// Data/aromatic-bases.tsv plus benzene increments of the substituents on the same ring, which are less certain there.
+/// </summary>
+internal static class AromaticShifts
+{
+    private const double CentreOfClassPpm = 7.5;
+    private static readonly FactTable Benzene = FactTable.Load("benzene-increments");
+    private static readonly PatternTable Bases = PatternTable.Load("aromatic-bases");
+    private static readonly ImmutableArray<string> PlaceAtDistance = ["", "ortho", "meta", "para"];
+
+    /// <summary>Estimates the shift of a proton on an aromatic carbon.</summary>
+    public static ShiftEstimate Estimate(PerceivedMolecule molecule, int carbon)
+    {
+        ImmutableArray<ImmutableArray<int>> rings =
+            [.. molecule.RingsOf(carbon).Select(molecule.Ring).Where(ring => ring.All(atom => molecule[atom].IsAromatic))];
+        if (rings.IsEmpty)
+        {
+            return ShiftEstimate.NotCovered(CentreOfClassPpm, UncertaintyModel.UnsaturatedClassPpm);
+        }
+
+        bool isBenzene = rings.Length == 1 && rings[0].All(atom => molecule[atom].AtomicNumber == 6 && !IsFusedAromatic(molecule, atom));
+        Fact? parent = isBenzene ? Benzene.Facts[0] : Bases.FirstAt(molecule, carbon);
+        if (parent is null)
+        {
+            return ShiftEstimate.NotCovered(CentreOfClassPpm, UncertaintyModel.UnsaturatedClassPpm);
+        }
+
+        var sum = new ShiftSum(parent);
+        foreach (ImmutableArray<int> ring in rings)
+        {
+            if (!AddSubstituents(molecule, carbon, ring, isBenzene, sum))
+            {
+                return ShiftEstimate.NotCovered(CentreOfClassPpm, UncertaintyModel.UnsaturatedClassPpm);
+            }
+        }
+
+        return sum.ToEstimate();
+    }
+
+    private static bool AddSubstituents(PerceivedMolecule molecule, int carbon, ImmutableArray<int> ring, bool isBenzene, ShiftSum sum)
+    {
+        int start = ring.IndexOf(carbon);
+        for (int step = 1; step < ring.Length; step++)
+        {
+            int atom = ring[(start + step) % ring.Length];
+            string place = PlaceAtDistance[Math.Min(3, Math.Min(step, ring.Length - step))];
+            foreach (int root in Exocyclic(molecule, atom))
+            {
+                if (molecule[atom].AtomicNumber != 6)
+                {
+                    sum.AddUncertainty(UncertaintyModel.OtherRingPpm);
+                    continue;
+                }
+
+                if (Benzene.Find(place, molecule.SubstituentAt(atom, root)) is not { } row)
+                {
+                    return false;
+                }
+
+                sum.Add(row.Fact, row.IsBorrowed, isBenzene ? 0 : UncertaintyModel.OtherRingPpm);
+            }
+
+            int next = ring[(start + step + 1) % ring.Length];
+            bool isOrthoPair = next != carbon && Exocyclic(molecule, atom).Any() && Exocyclic(molecule, next).Any();
+            sum.AddUncertainty(isOrthoPair ? UncertaintyModel.OrthoPairPpm : 0);
+        }
+
+        return true;
+    }
+
+    /// <summary>Atoms singly bonded to a ring atom from outside its aromatic rings; a doubly bonded oxygen is part of the parent.</summary>
+    private static IEnumerable<int> Exocyclic(PerceivedMolecule molecule, int atom) =>
+        molecule.Neighbours(atom).Where(other => molecule.BondBetween(atom, other) is { IsAromatic: false, Order: 1 });
+
+    private static bool IsFusedAromatic(PerceivedMolecule molecule, int atom) =>
+        molecule.RingsOf(atom).Count(ring => molecule.Ring(ring).All(member => molecule[member].IsAromatic)) > 1;
+}
