@@ -12,7 +12,9 @@ internal static class AromaticShifts
     private const double CentreOfClassPpm = 7.5;
     private static readonly FactTable Benzene = FactTable.Load("benzene-increments");
     private static readonly PatternTable Bases = PatternTable.Load("aromatic-bases");
-    private static readonly ImmutableArray<string> PlaceAtDistance = ["", "ortho", "meta", "para"];
+    private const string Ortho = "ortho";
+    private const string TwistedPlace = "ortho-twisted";
+    private static readonly ImmutableArray<string> PlaceAtDistance = ["", Ortho, "meta", "para"];
 
     /// <summary>Estimates the shift of a proton on an aromatic carbon.</summary>
     public static ShiftEstimate Estimate(PerceivedMolecule molecule, int carbon)
@@ -58,7 +60,9 @@ internal static class AromaticShifts
                     continue;
                 }
 
-                if (Benzene.Find(place, molecule.SubstituentAt(atom, root)) is not { } row)
+                Substituent substituent = molecule.SubstituentAt(atom, root);
+                (Fact Fact, bool IsBorrowed)? twisted = place == Ortho && IsTwisted(molecule, atom, root) ? Benzene.Find(TwistedPlace, substituent) : null;
+                if ((twisted ?? Benzene.Find(place, substituent)) is not { } row)
                 {
                     return false;
                 }
@@ -77,6 +81,16 @@ internal static class AromaticShifts
     /// <summary>Atoms singly bonded to a ring atom from outside its aromatic rings; a doubly bonded oxygen is part of the parent.</summary>
     private static IEnumerable<int> Exocyclic(PerceivedMolecule molecule, int atom) =>
         molecule.Neighbours(atom).Where(other => molecule.BondBetween(atom, other) is { IsAromatic: false, Order: 1 });
+
+    /// <summary>Whether an acceptor has another beside it, so that at most one of them lies in the plane of the ring.</summary>
+    private static bool IsTwisted(PerceivedMolecule molecule, int atom, int root) => IsAcceptor(molecule, root)
+        && molecule.Neighbours(atom)
+            .Where(next => next != root)
+            .Any(next => Exocyclic(molecule, next).Any(other => IsAcceptor(molecule, other)));
+
+    private static bool IsAcceptor(PerceivedMolecule molecule, int root) =>
+        molecule[root].AtomicNumber is 6 or 7
+        && molecule.Molecule.BondsOf(root).Any(bond => molecule.Molecule.Bonds[bond].Order == 2 && molecule[molecule.Molecule.Other(bond, root)].AtomicNumber == 8);
 
     private static bool IsFusedAromatic(PerceivedMolecule molecule, int atom) =>
         molecule.RingsOf(atom).Count(ring => molecule.Ring(ring).All(member => molecule[member].IsAromatic)) > 1;

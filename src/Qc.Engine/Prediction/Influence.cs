@@ -21,7 +21,7 @@ internal sealed record Influence(string Place, Substituent Substituent, int Root
     /// <summary>Two carbons further.</summary>
     public const string Gamma = "gamma";
 
-    /// <summary>All substituents that act on a carbon, nearest first; the walk goes over saturated carbon, and over one ether-like atom next to the carbon.</summary>
+    /// <summary>All substituents that act on a carbon, nearest first; the walk goes over alkyl carbon, and over ether-like atoms, which count as no step.</summary>
     public static ImmutableArray<Influence> On(PerceivedMolecule molecule, int carbon)
     {
         var found = ImmutableArray.CreateBuilder<Influence>();
@@ -36,11 +36,11 @@ internal sealed record Influence(string Place, Substituent Substituent, int Root
                 {
                     Substituent substituent = molecule.SubstituentAt(from, root);
                     found.Add(new Influence(place, substituent, root, across));
-                    if (molecule.IsSaturatedCarbon(root))
+                    if (substituent.Is("alkyl"))
                     {
                         next.Add((root, across));
                     }
-                    else if (place == Alpha && molecule[root].AtomicNumber is 7 or 8 or 16 && molecule.Hybridisation(root) == 3)
+                    else if (place != Gamma && molecule[root].AtomicNumber is 7 or 8 or 16 && molecule.Hybridisation(root) == 3)
                     {
                         next.AddRange(molecule.Neighbours(root).Where(atom => molecule.IsSaturatedCarbon(atom) && seen.Add(atom)).Select(atom => (atom, true)));
                     }

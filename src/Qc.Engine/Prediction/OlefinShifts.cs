@@ -42,6 +42,8 @@ internal static class OlefinShifts
             sum.Add(row.Fact, row.IsBorrowed);
         }
 
+        bool hasAcceptors = HasAcceptor(molecule, carbon, partner) && HasAcceptor(molecule, partner, carbon);
+        sum.AddUncertainty(hasAcceptors ? UncertaintyModel.TwoAcceptorsPpm : 0);
         ImmutableArray<int> far = OlefinGeometry.SubstituentsOf(molecule, partner, carbon);
         if (far.Select(root => OlefinGeometry.ProtonIsCisTo(molecule, carbon, ordinal, partner, root)).Any(cis => cis is null))
         {
@@ -95,6 +97,10 @@ internal static class OlefinShifts
         var special = new Substituent(substituent.Name, [.. substituent.Names.Select(name => name with { Name = name.Name + variant })]);
         return Increments.Find(place, special) ?? Increments.Find(place, substituent);
     }
+
+    private static bool HasAcceptor(PerceivedMolecule molecule, int atom, int partner) =>
+        OlefinGeometry.SubstituentsOf(molecule, atom, partner).Any(root => molecule.SubstituentAt(atom, root) is var substituent
+            && (substituent.Is("COR") || substituent.Is("COOR") || substituent.Is("CONR2") || substituent.Is("CN") || substituent.Is("NO2")));
 
     private static bool SharesSmallRing(PerceivedMolecule molecule, int carbon, int partner, int root) =>
         molecule.RingsOf(carbon).Intersect(molecule.RingsOf(partner)).Intersect(molecule.RingsOf(root))

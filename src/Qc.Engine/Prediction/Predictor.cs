@@ -56,10 +56,11 @@ public static class Predictor
         }
 
         ShiftEstimate estimate = SaturatedShifts.Estimate(molecule, carbon);
+        double difference = molecule.RingsOf(carbon).Length > 0 ? UncertaintyModel.DiastereotopicInRingPpm : UncertaintyModel.DiastereotopicPpm;
         return group.DiastereotopicPartner < 0 ? estimate : estimate with
         {
             StandardUncertaintyPpm = Math.Sqrt(
-                Math.Pow(estimate.StandardUncertaintyPpm, 2) + Math.Pow(UncertaintyModel.DiastereotopicPpm, 2)),
+                Math.Pow(estimate.StandardUncertaintyPpm, 2) + Math.Pow(difference, 2)),
         };
     }
 }

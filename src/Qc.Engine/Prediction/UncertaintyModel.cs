@@ -33,8 +33,14 @@ internal static class UncertaintyModel
     /// <summary>An alkene whose geometry is not stated, beside half the difference of the two.</summary>
     public const double NoGeometryPpm = 0.05;
 
+    /// <summary>An alkene with an acceptor on each carbon (sums overshoot).</summary>
+    public const double TwoAcceptorsPpm = 0.10;
+
     /// <summary>A proton with a diastereotopic partner: the two differ by twice this, typically.</summary>
     public const double DiastereotopicPpm = 0.08;
+
+    /// <summary>The same in a ring, where one is axial or beside a substituent.</summary>
+    public const double DiastereotopicInRingPpm = 0.20;
 
     /// <summary>A solvent for which there is no table.</summary>
     public const double UnknownSolventPpm = 0.20;

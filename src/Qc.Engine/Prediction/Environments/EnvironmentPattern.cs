@@ -13,7 +13,7 @@ namespace Qc.Engine.Prediction.Environments;
 /// atom      = symbol | "[" symbol { "," symbol } { ";" property } "]" | "{" name "}" ; then "@" on the far atom of a coupling
 /// symbol    = element, e.g. C O Cl (not aromatic) | c n o s (aromatic) | "*" any | "X" F, Cl, Br or I | "Q" neither C nor H
 /// property  = H0 .. H4 hydrogens | D1 .. D4 heavy neighbours | sp sp2 sp3 | r in a ring | r0 in none | r3 .. r9 in a ring of that size
-///           | R2 in two rings or more | + | - | 0 charge
+///           | R1 in one ring only | R2 in two or more | + | - | 0 charge
 /// name      = a substituent of Data/substituents.tsv, or a class that it belongs to
 /// </code>
 /// "[C;H2](-[C;H3])-{OCOR}" is the CH2 of an ethyl ester. Atoms of a match are distinct; nothing is said about what is not written.
