@@ -5,8 +5,9 @@ namespace Qc.Engine.Reading;
 /// <summary>Checks that abscissae given point by point are equidistant, as printed.</summary>
 internal static class EquidistantAxis
 {
-    // Printed digits scatter the abscissae by less than half a step; a point left out moves all after it by a whole one.
-    private const double ToleranceSteps = 0.5;
+    // One point left out of n moves some abscissa by at least (n - 1) / 2n, nearly half a step, from the line through the ends;
+    // printed digits scatter them by less than this.
+    private const double ToleranceSteps = 0.3;
 
     public static bool TryFit(
         ReadOnlySpan<double> x, string label, int line, ReadingLog log, out double first, out double step)

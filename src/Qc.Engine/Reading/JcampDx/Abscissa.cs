@@ -16,7 +16,7 @@ internal sealed record Abscissa(
 {
     private const double SameStep = 1e-9;
     private const double RoundingPoints = 0.1;
-    private const double MostPointsOff = 2;
+    private const double MostPointsOff = 1.2;
 
     /// <summary>The step for the number of ordinates found, if that number agrees with what the header says.</summary>
     /// <remarks>

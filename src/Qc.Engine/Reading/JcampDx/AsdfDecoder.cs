@@ -164,7 +164,7 @@ internal ref struct AsdfDecoder
 
         _difference = AsdfDigits.IsNegative(c) ? -value : value;
         _last = Form.Difference;
-        return Add(_current + _difference);
+        return AddStep(_difference);
     }
 
     private bool AddRepeats(byte c)
@@ -187,7 +187,7 @@ internal ref struct AsdfDecoder
         var step = _last == Form.Difference ? _difference : 0;
         for (var more = (int)times - 1; more > 0; more--)
         {
-            if (!Add(_current + step))
+            if (!AddStep(step))
             {
                 return false;
             }
@@ -196,13 +196,16 @@ internal ref struct AsdfDecoder
         return true;
     }
 
+    private bool AddStep(double step)
+    {
+        var value = _current + step;
+        return Math.Abs(value) <= LargestExact
+            ? Add(value)
+            : Fail("sums of at most 2^53", Invariant($"The ordinate {value} is too large for differences to be exact"));
+    }
+
     private bool Add(double value)
     {
-        if (Math.Abs(value) > LargestExact)
-        {
-            return Fail("ordinates of at most 2^53", Invariant($"The ordinate {value} is too large to be exact"));
-        }
-
         if (_count == _values.Length && !TryGrow())
         {
             return false;

@@ -49,7 +49,7 @@ internal static class JcampSpectrum
         switch (data.Units)
         {
             case "PPM":
-                axis = (data.First, data.Step, true);
+                axis = (data.First, data.Step, header.Keyword("$AXISREFERENCED") != "NO");
                 NoteOtherReference(reference, axis, log);
                 break;
             case "HZ" or "HERTZ":

@@ -71,28 +71,25 @@ internal sealed class NtuplesColumns(JcampHeader header)
             return log.Fail(missing, header.LineOf(missing), "a number for column X", "The axis is not complete");
         }
 
-        delta ??= StepFromFactor(first.Value, last.Value, factor);
         if (!PointCount.TryGet(points.Value, "VARDIM", header.LineOf("VARDIM"), log, out var count))
         {
             return false;
         }
 
+        delta ??= StepFromFactor(first.Value, last.Value, factor, count);
         var units = JcampHeader.Compact(Text("UNITS", x));
         axis = new Abscissa(
             first.Value, last.Value, delta, factor ?? 1, count, units, "VARDIM", header.LineOf("VARDIM"));
         return true;
     }
 
-    // Writers of integer X columns put the step into FACTOR; where it divides the axis into whole steps it is one.
-    private static double? StepFromFactor(double first, double last, double? factor)
+    // Writers of integer X columns put the step into FACTOR; where it divides the axis into about as many whole steps as there
+    // are points (or half, where both parts were counted) it is one.
+    private static double? StepFromFactor(double first, double last, double? factor, int points)
     {
-        if (factor is not { } f || f == 0 || f == 1)
-        {
-            return null;
-        }
-
-        var steps = Math.Abs((last - first) / f);
-        return steps > 1.5 && Math.Abs(steps - Math.Round(steps)) < 0.01 ? Math.CopySign(f, last - first) : null;
+        var steps = Math.Abs((last - first) / (factor ?? 0));
+        var isStep = steps <= points + 1 && steps >= (points / 2.0) - 1 && Math.Abs(steps - Math.Round(steps)) < 0.01;
+        return isStep ? Math.CopySign(factor!.Value, last - first) : null;
     }
 
     private static string[] Items(JcampHeader header, string label) =>
