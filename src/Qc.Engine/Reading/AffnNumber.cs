@@ -2,6 +2,19 @@ using System.Globalization;
 
 namespace Qc.Engine.Reading;
 
+/// <summary>When an 'E' behind digits is an exponent and not the pseudo-digit of the packed forms.</summary>
+internal enum ExponentRule
+{
+    /// <summary>Always: the text has no packed forms.</summary>
+    Always,
+
+    /// <summary>With a sign, or after a decimal point: ordinates that may be packed.</summary>
+    SignOrPoint,
+
+    /// <summary>With a sign: the X that opens a line, behind which packed ordinates may follow at once.</summary>
+    Sign,
+}
+
 /// <summary>Numbers in text, whatever the culture: sign, digits, point, exponent; finite, never with a decimal comma.</summary>
 internal static class AffnNumber
 {
@@ -16,12 +29,9 @@ internal static class AffnNumber
     /// <summary>The number that starts at <paramref name="position"/>, which is moved behind it.</summary>
     /// <param name="text">Bytes of a table.</param>
     /// <param name="position">Where the number starts.</param>
-    /// <param name="isAbscissa">
-    /// True for the X that opens a line. There an 'E' is an exponent only if a sign follows it, as packed ordinates may begin
-    /// with the pseudo-digit E.
-    /// </param>
+    /// <param name="rule">When an 'E' is an exponent.</param>
     /// <param name="value">The number.</param>
-    public static bool TryRead(ReadOnlySpan<byte> text, ref int position, bool isAbscissa, out double value)
+    public static bool TryRead(ReadOnlySpan<byte> text, ref int position, ExponentRule rule, out double value)
     {
         var end = position;
         if (end < text.Length && text[end] is (byte)'+' or (byte)'-')
@@ -46,7 +56,7 @@ internal static class AffnNumber
             }
         }
 
-        var exponentEnd = ExponentEnd(text, end, hasPoint && !isAbscissa);
+        var exponentEnd = ExponentEnd(text, end, rule == ExponentRule.Always || (hasPoint && rule == ExponentRule.SignOrPoint));
         var start = position;
         if (!hasPoint && exponentEnd == end && digits is > 0 and <= 15)
         {

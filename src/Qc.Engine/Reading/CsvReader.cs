@@ -85,7 +85,7 @@ internal static class CsvReader
     {
         var position = 0;
         intensity = 0;
-        if (!AffnNumber.TryRead(row, ref position, isAbscissa: false, out ppm))
+        if (!AffnNumber.TryRead(row, ref position, ExponentRule.Always, out ppm))
         {
             return false;
         }
@@ -98,7 +98,7 @@ internal static class CsvReader
 
         rest = rest[1..].TrimStart(" \t"u8);
         position = 0;
-        return AffnNumber.TryRead(rest, ref position, isAbscissa: false, out intensity) && position == rest.Length;
+        return AffnNumber.TryRead(rest, ref position, ExponentRule.Always, out intensity) && position == rest.Length;
     }
 
     private static void TakeNote(ReadOnlySpan<byte> comment, SortedDictionary<string, string> notes)

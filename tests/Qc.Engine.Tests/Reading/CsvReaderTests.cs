@@ -10,7 +10,7 @@ public class CsvReaderTests
     private const string Head = "# frequencyMHz= 400.13\n# nucleus= 1H\n# solvent= CDCl3\n";
 
     [Theory]
-    [InlineData("10,1\n9,2.5\n8,-3e+2\n")]
+    [InlineData("10,1\n9,2.5\n8,-3e2\n")]
     [InlineData("ppm;intensity\r\n10; 1\r\n9; 2.5\r\n8; -3.0E2\r\n")]
     [InlineData("8\t-300\r9\t2.5\r10\t1")]
     [InlineData("\n# note\n10.0001,1\n\n9.0002,2.5\n8.0001,-300")]

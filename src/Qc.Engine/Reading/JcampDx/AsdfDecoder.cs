@@ -98,7 +98,7 @@ internal ref struct AsdfDecoder
 
     private bool DecodeLine()
     {
-        if (!AffnNumber.TryRead(_text, ref _position, isAbscissa: true, out var x))
+        if (!AffnNumber.TryRead(_text, ref _position, ExponentRule.Sign, out var x))
         {
             return Fail("a line that begins with its abscissa", "The line does not begin with a number");
         }
@@ -132,7 +132,7 @@ internal ref struct AsdfDecoder
         TryReadDigits(AsdfDigits.DigitOf(c), out var value) && TakeAbsolute(AsdfDigits.IsNegative(c) ? -value : value, ref repeats);
 
     private bool TakeNumber(ref bool repeats) =>
-        AffnNumber.TryRead(_text, ref _position, isAbscissa: false, out var value)
+        AffnNumber.TryRead(_text, ref _position, ExponentRule.SignOrPoint, out var value)
             ? TakeAbsolute(value, ref repeats)
             : Fail("a finite number with a decimal point", "An ordinate cannot be read");
 

@@ -23,7 +23,7 @@ internal static class XyPairs
                     position = TextLines.AfterBreak(text, position);
                     line++;
                     break;
-                case AsdfKind.Number when AffnNumber.TryRead(text, ref position, isAbscissa: false, out var value):
+                case AsdfKind.Number when AffnNumber.TryRead(text, ref position, ExponentRule.Always, out var value):
                     if (pairs[1].Count >= maxPoints)
                     {
                         return log.Fail(
