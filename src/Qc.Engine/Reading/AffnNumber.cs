@@ -21,9 +21,9 @@ internal static class AffnNumber
     private const NumberStyles Style =
         NumberStyles.AllowLeadingSign | NumberStyles.AllowDecimalPoint | NumberStyles.AllowExponent;
 
-    /// <summary>A number that is all of <paramref name="text"/> but blanks and a closing semicolon.</summary>
+    /// <summary>A number that is all of <paramref name="text"/> but blanks, stray quotes and a closing semicolon.</summary>
     public static bool TryParse(ReadOnlySpan<char> text, out double value) =>
-        double.TryParse(text.TrimEnd("; \t\r\n").Trim(), Style, CultureInfo.InvariantCulture, out value)
+        double.TryParse(text.Trim("; \t\r\n\"'<>"), Style, CultureInfo.InvariantCulture, out value)
         && double.IsFinite(value);
 
     /// <summary>The number that starts at <paramref name="position"/>, which is moved behind it.</summary>

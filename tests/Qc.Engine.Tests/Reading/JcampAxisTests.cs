@@ -104,6 +104,15 @@ public class JcampAxisTests
         Assert.Equal(label, Jcamp.Error(s_four.With(Hertz, units)).Label);
 
     [Fact]
+    public void A_step_that_the_x_column_refutes_is_a_departure()
+    {
+        var spectrum = Jcamp.Spectrum(Jcamp.WithTable("300 1 2\n100 3 4", 4, 300).With(Hertz, "##DELTAX= -50\n" + Hertz));
+
+        Assert.Equal(-1, spectrum.PpmPerPoint, 12);
+        Assert.Contains(spectrum.Warnings, w => w.Label == "DELTAX");
+    }
+
+    [Fact]
     public void A_wrong_sign_of_the_step_alone_is_a_departure() =>
         Assert.Contains(Jcamp.Spectrum(s_four.With(Hertz, "##DELTAX= 100\n" + Hertz)).Warnings, w => w.Label == "DELTAX");
 

@@ -12,12 +12,13 @@ public class JcampBlockTests
     [Fact]
     public void A_compound_file_gives_every_measurement_in_its_order_and_notes_the_rest()
     {
-        var result = Jcamp.Read(Link(3, Structure, Jcamp.MiniFid + "\n", Peaks, Link(1, Jcamp.Mini + "\n")));
+        var plane = Jcamp.Mini.With("NMR SPECTRUM", "nD NMR SPECTRUM\n##NUM DIM= 2") + "\n";
+        var result = Jcamp.Read(Link(4, Structure, Jcamp.MiniFid + "\n", Peaks, plane, Link(1, Jcamp.Mini + "\n")));
 
         Assert.Null(result.Error);
         Assert.Collection(
             result.Measurements, m => Assert.IsType<FidMeasurement>(m), m => Assert.IsType<SpectrumMeasurement>(m));
-        Assert.All(result.Measurements, m => Assert.Equal(2, m.Warnings.Count(w => w.Label == "DATATYPE")));
+        Assert.All(result.Measurements, m => Assert.Equal(3, m.Warnings.Count(w => w.Label == "DATATYPE")));
         Assert.Equal("mini", result.Measurements[1].Facts.Title);
     }
 

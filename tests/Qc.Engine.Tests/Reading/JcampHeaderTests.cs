@@ -127,7 +127,7 @@ public class JcampHeaderTests
     [InlineData("##DATA TYPE= NMR SPECTRUM", "##DATA TYPE= NMR PEAK TABLE", "DATATYPE", "NMR SPECTRUM or NMR FID")]
     [InlineData("##DATA TYPE= NMR SPECTRUM", "##DATA TYPE= INFRARED SPECTRUM", "DATATYPE", "NMR SPECTRUM or NMR FID")]
     [InlineData("##DATA TYPE= NMR SPECTRUM", "##DATA TYPE= NMR SPECTRUM\n##NUM DIM= 2", "NUMDIM", "1")]
-    [InlineData("##XYDATA= (X++(Y..Y))", "##PEAK TABLE= (XY..XY)", "PEAKTABLE", "a spectrum or FID")]
+    [InlineData("##XYDATA= (X++(Y..Y))", "##PEAK TABLE= (XY..XY)", "DATATYPE", "NMR SPECTRUM or NMR FID")]
     public void What_could_change_a_number_is_an_error_that_names_the_label(string old, string replacement, string label, string expected)
     {
         var error = Jcamp.Error(Jcamp.Mini.With(old, replacement));

@@ -48,36 +48,39 @@ internal sealed record Abscissa(
         }
 
         step = (Last - First) / (found - 1);
-        return step != 0
-            ? CheckDelta(found, log, ref step)
-            : log.Fail(Label, Line, "different first and last abscissae", "The axis has no extent");
+        if (step == 0)
+        {
+            return log.Fail(Label, Line, "different first and last abscissae", "The axis has no extent");
+        }
+
+        step = Refine(step, found, log);
+        return true;
     }
 
-    private bool CheckDelta(int found, ReadingLog log, ref double step)
+    /// <summary>Whether the stated step differs from the one of the axis by more than N against N - 1 points explains.</summary>
+    public bool IsDisputedByDelta(double step, int found) => PointsOff(step, found) > MostPointsOff;
+
+    // DELTAX says the same but for rounding: its printed digits are the better ones.
+    private double Refine(double step, int found, ReadingLog log)
     {
         if (Delta is not { } delta)
         {
-            return true;
+            return step;
         }
 
         if (Math.Abs(delta - step) <= SameStep * Math.Abs(step))
         {
-            step = delta;
-            return true;
+            return delta;
         }
 
-        var pointsOff = Math.Abs((Math.Abs(delta) - Math.Abs(step)) * (found - 1) / step);
-        if (pointsOff > MostPointsOff)
-        {
-            return log.Fail(
-                "DELTAX", 0, Invariant($"{step}, as first and last abscissa give"), Invariant($"The step is stated as {delta}"));
-        }
-
-        if (pointsOff > RoundingPoints || Math.Sign(delta) != Math.Sign(step))
+        if (PointsOff(step, found) > RoundingPoints || Math.Sign(delta) != Math.Sign(step))
         {
             log.Warn("DELTAX", 0, Invariant($"The stated step {delta} differs from {step}, which first and last abscissa give"));
         }
 
-        return true;
+        return step;
     }
+
+    private double PointsOff(double step, int found) =>
+        Delta is { } delta ? Math.Abs((Math.Abs(delta) - Math.Abs(step)) * (found - 1) / step) : 0;
 }

@@ -15,9 +15,7 @@ internal sealed class JcampDataReader(ReadOnlyMemory<byte> content, JcampTables 
         data = null;
         if (tables.Tables.Count == 0)
         {
-            return tables.HasPeaks
-                ? _log.Fail("PEAKTABLE", 0, "a spectrum or FID", "A peak table holds no line shapes that could be judged")
-                : _log.Fail("XYDATA", 0, "##XYDATA=, ##XYPOINTS= or ##NTUPLES= with pages", "The block holds no data table");
+            return _log.Fail("XYDATA", 0, "##XYDATA=, ##XYPOINTS= or ##NTUPLES= with pages", "The block holds no data table");
         }
 
         if (tables.IsNtuples)
@@ -184,7 +182,7 @@ internal sealed class JcampDataReader(ReadOnlyMemory<byte> content, JcampTables 
                 TableText(record).Span, record.Label, record.Line + 1, axis.Points, budget.Left, _log, out ordinates, out var marks)
             || !budget.TrySpend(ordinates.Length, record.Label, record.Line, _log)
             || !axis.TryGetStep(ordinates.Length, _log, out step)
-            || !XColumnCheck.Run(marks, axis, step, record.Label, _log))
+            || !XColumnCheck.Run(marks, axis, step, ordinates.Length, record.Label, _log))
         {
             return false;
         }

@@ -108,8 +108,8 @@ internal static class JcampReader
         var type = header.Keyword("DATATYPE");
         kind = type switch
         {
-            "NMRSPECTRUM" => BlockKind.Spectrum,
-            "NMRFID" => BlockKind.Fid,
+            "NMRSPECTRUM" or "NDNMRSPECTRUM" => BlockKind.Spectrum,
+            "NMRFID" or "NDNMRFID" => BlockKind.Fid,
             _ => BlockKind.Other,
         };
         if (!header.IsUnique("DATATYPE"))
@@ -117,25 +117,26 @@ internal static class JcampReader
             return false;
         }
 
-        var onlyPeaks = tables.HasPeaks && tables.Tables.Count == 0;
-        if (kind != BlockKind.Other && onlyPeaks && block.IsInside)
-        {
-            kind = BlockKind.Other;
-        }
-
-        if (kind != BlockKind.Other && header.Fact("NUMDIM") is { } dimensions && dimensions != 1)
-        {
-            return header.Log.Fail("NUMDIM", header.LineOf("NUMDIM"), "1", "Only one-dimensional measurements are read");
-        }
-
-        if (kind != BlockKind.Other)
+        var dimensions = header.Fact("NUMDIM") ?? (type.StartsWith("ND", StringComparison.Ordinal) ? 2 : 1);
+        var onlyPeaks = (tables.HasPeaks && tables.Tables.Count == 0) || type is "NMRPEAKTABLE" or "NMRPEAKASSIGNMENTS";
+        if (kind != BlockKind.Other && dimensions == 1 && !onlyPeaks)
         {
             return true;
         }
 
-        if (!block.IsInside && (onlyPeaks || type is "NMRPEAKTABLE" or "NMRPEAKASSIGNMENTS"))
+        kind = BlockKind.Other;
+        if (!block.IsInside && dimensions != 1)
         {
-            return header.Log.Fail("DATATYPE", header.LineOf("DATATYPE"), "NMR SPECTRUM or NMR FID", "A peak table holds no line shapes that could be judged");
+            return header.Log.Fail("NUMDIM", header.LineOf("NUMDIM"), "1", "Only one-dimensional measurements are read");
+        }
+
+        if (!block.IsInside && onlyPeaks)
+        {
+            return header.Log.Fail(
+                "DATATYPE",
+                header.LineOf("DATATYPE"),
+                "NMR SPECTRUM or NMR FID with a data table",
+                "A peak table holds no line shapes that could be judged");
         }
 
         var name = type.Length > 0 ? $"'{JcampHeader.Shown(header.Text("DATATYPE"))}'" : "without ##DATA TYPE=";

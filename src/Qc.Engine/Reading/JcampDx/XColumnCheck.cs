@@ -11,17 +11,22 @@ internal static class XColumnCheck
     // Half a step would be exact; printed X are rounded to whole points by some writers, hence a little more.
     private const double ToleranceSteps = 0.6;
 
-    /// <summary>False, with an error, only where the column runs against the header and nothing tells which is right.</summary>
-    public static bool Run(List<LineMark> marks, Abscissa axis, double step, string label, ReadingLog log)
+    /// <summary>False, with an error, only where the axis is in doubt and nothing tells what is right.</summary>
+    public static bool Run(List<LineMark> marks, Abscissa axis, double step, int found, string label, ReadingLog log)
     {
-        if (marks.Count == 0)
-        {
-            return true;
-        }
-
         var scale = axis.Factor / step;
         var origin = marks[0].X;
-        if (FirstFailure(marks, scale, axis.First / step) is not { } failure)
+        var failed = FirstFailure(marks, scale, axis.First / step);
+        if ((failed is not null || marks.Count == 1) && axis.IsDisputedByDelta(step, found))
+        {
+            return log.Fail(
+                "DELTAX",
+                0,
+                Invariant($"{step}, as first and last abscissa give"),
+                Invariant($"The step is stated as {axis.Delta}, and the X column does not tell which is right"));
+        }
+
+        if (failed is not { } failure)
         {
             return true;
         }
