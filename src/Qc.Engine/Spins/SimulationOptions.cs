@@ -28,5 +28,5 @@ public sealed record SimulationOptions
     public double DroppedLine { get; init; } = 1e-5;
 
     /// <summary>Largest share of the intensity of a cluster that may be left out in all.</summary>
-    public double DroppedInAll { get; init; } = 5e-4;
+    public double DroppedInAll { get; init; } = 1e-3;
 }

@@ -7,6 +7,7 @@ namespace Qc.Engine.Spins;
 /// </summary>
 /// <remarks>
 /// Written here because blocks are many and mostly small, rows stay contiguous, and the order of every sum is fixed.
+/// Elements are frequencies in Hz: their squares must neither overflow nor underflow (1e−140 to 1e+140).
 /// </remarks>
 internal static class SymmetricEigen
 {

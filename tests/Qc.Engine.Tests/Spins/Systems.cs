@@ -15,7 +15,7 @@ internal static class Systems
 
     public static SpinSystem Random(int seed, int[] counts, double spread, double couplingRange)
     {
-        var random = new Random(seed);
+        var random = new System.Random(seed);
         ImmutableArray<SpinSite> sites = [.. counts.Select(n => new SpinSite((random.NextDouble() - 0.5) * spread, n))];
         var couplings = ImmutableArray.CreateBuilder<SpinCoupling>();
         for (int a = 0; a < counts.Length; a++)
@@ -23,6 +23,25 @@ internal static class Systems
             for (int b = a + 1; b < counts.Length; b++)
             {
                 couplings.Add(new SpinCoupling(a, b, (random.NextDouble() - 0.3) * couplingRange));
+            }
+        }
+
+        return new SpinSystem(sites, couplings.ToImmutable());
+    }
+
+    /// <summary>A chain of CH2 groups, every proton distinct: geminal −13 Hz, vicinal 3 to 12 Hz.</summary>
+    public static SpinSystem Chain(int seed, int carbons, double span)
+    {
+        var random = new System.Random(seed);
+        ImmutableArray<SpinSite> sites =
+            [.. Enumerable.Range(0, 2 * carbons).Select(_ => new SpinSite(random.NextDouble() * span, 1))];
+        var couplings = ImmutableArray.CreateBuilder<SpinCoupling>();
+        for (int c = 0; c < carbons; c++)
+        {
+            couplings.Add(new SpinCoupling(2 * c, 2 * c + 1, -13));
+            for (int pair = 0; pair < 4 && c + 1 < carbons; pair++)
+            {
+                couplings.Add(new SpinCoupling(2 * c + pair / 2, 2 * c + 2 + pair % 2, 3 + 9 * random.NextDouble()));
             }
         }
 
