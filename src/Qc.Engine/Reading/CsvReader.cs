@@ -16,7 +16,8 @@ internal static class CsvReader
         var notes = new SortedDictionary<string, string>(StringComparer.OrdinalIgnoreCase);
         if (!TryReadLines(content.Span, log, notes, out var ppm, out var intensity)
             || !TryFacts(notes, log, out var facts)
-            || !EquidistantAxis.TryFit(ppm, Label, 0, log, out var first, out var step))
+            || !EquidistantAxis.TryFit(ppm, Label, 0, log, out var first, out var step)
+            || !PpmWindow.Check(first, step, ppm.Length, facts!.Nucleus, Label, 0, log))
         {
             return ReadingResult.Rejected(log.Error!);
         }
@@ -28,7 +29,7 @@ internal static class CsvReader
             Array.Reverse(intensity);
         }
 
-        return ReadingResult.Read([new SpectrumMeasurement(facts!, log.Warnings, intensity, null, first, step, true)]);
+        return ReadingResult.Read([new SpectrumMeasurement(facts, log.Warnings, intensity, null, first, step, true)]);
     }
 
     private static bool TryReadLines(

@@ -1,9 +1,9 @@
 namespace Qc.Engine.Reading;
 
 /// <summary>
-/// What a file may cost to read. Work is linear in the file's bytes plus the points it unfolds to. Memory beyond the file
-/// itself stays below 24 bytes a byte of the file plus 32 bytes a point allowed, because one byte of a table may stand for
-/// many points and only <see cref="MaxPoints"/> bounds them.
+/// What a file may cost to read. Work is linear in the bytes of the file plus the points it unfolds to. Memory, counted as all
+/// that is ever allocated, stays below 40 bytes a byte of the file plus 64 bytes a point allowed plus 1000 bytes a record
+/// allowed; points count apart because one byte of a table may stand for many.
 /// </summary>
 public sealed record ReadingLimits
 {

@@ -45,6 +45,15 @@ public class JcampBlockTests
     }
 
     [Fact]
+    public void A_wrong_count_of_blocks_is_a_departure()
+    {
+        var inner = new[] { Jcamp.Mini + "\n", Jcamp.MiniFid + "\n" };
+
+        Assert.DoesNotContain(Jcamp.Read(Link(2, inner)).Measurements[0].Warnings, w => w.Label == "BLOCKS");
+        Assert.Contains(Jcamp.Read(Link(3, inner)).Measurements[0].Warnings, w => w.Label == "BLOCKS" && w.Line == 4);
+    }
+
+    [Fact]
     public void A_cut_file_is_an_error_by_its_count_of_points() =>
         Assert.Equal("NPOINTS", Jcamp.Error(Jcamp.Mini[..Jcamp.Mini.IndexOf("jk49", StringComparison.Ordinal)]).Label);
 

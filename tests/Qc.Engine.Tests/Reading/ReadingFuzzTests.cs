@@ -34,7 +34,7 @@ public class ReadingFuzzTests
         { SpectrumFormat.JcampDx, s_link },
         { SpectrumFormat.JcampDx, s_pairs },
         { SpectrumFormat.NmrMl, s_nmrMl },
-        { SpectrumFormat.Csv, "# frequencyMHz= 400\n# nucleus= 1H\nppm,intensity\n10.5,1\n10.4,2e3\n10.3,-3\n" },
+        { SpectrumFormat.Csv, "# frequencyMHz= 400\n# nucleus= 1H\nppm,intensity\n10.5,1\n9.5,2e3\n8.5,-3\n" },
     };
 
     [Theory]

@@ -13,7 +13,10 @@ internal sealed class JcampBlock(int line, bool isInside)
 
     public List<JcampRecord> Records { get; } = [];
 
-    public bool IsLink { get; set; }
+    /// <summary>Whether the block only holds others.</summary>
+    public bool IsLink { get; private set; }
+
+    private int Inner { get; set; }
 
     /// <summary>Sorts records into blocks; compound blocks (DATA TYPE= LINK) are opened, blocks without measurement kept.</summary>
     /// <remarks>
@@ -29,14 +32,14 @@ internal sealed class JcampBlock(int line, bool isInside)
             switch (record.Label)
             {
                 case "TITLE":
-                    if (!TryOpen(record, open, blocks, log))
+                    if (!TryOpen(content, record, open, blocks, log))
                     {
                         return false;
                     }
 
                     break;
                 case "END":
-                    Close(record, open, blocks, log);
+                    Close(content, record, open, blocks, log);
                     break;
                 default:
                     if (open.Count == 0 && blocks.Count == 0)
@@ -53,24 +56,30 @@ internal sealed class JcampBlock(int line, bool isInside)
         while (open.TryPop(out var block))
         {
             log.Warn("END", 0, Invariant($"The block of line {block.Line} has no ##END="));
-            Finish(block, blocks, log);
+            Finish(content, block, blocks, log);
         }
 
         return blocks.Count > 0 || log.Fail("TITLE", 1, "##TITLE= and the labels after it", "The file has no labels");
     }
 
-    private static bool TryOpen(JcampRecord record, Stack<JcampBlock> open, List<JcampBlock> blocks, ReadingLog log)
+    private static bool TryOpen(
+        ReadOnlySpan<byte> content, JcampRecord record, Stack<JcampBlock> open, List<JcampBlock> blocks, ReadingLog log)
     {
         if (open.TryPeek(out var outer) && !outer.IsLink)
         {
             log.Warn("END", record.Line, Invariant($"The block of line {outer.Line} has no ##END= before the next ##TITLE="));
-            Finish(open.Pop(), blocks, log);
+            Finish(content, open.Pop(), blocks, log);
         }
 
         if (open.Count >= log.Limits.MaxNesting)
         {
             return log.Fail(
                 "TITLE", record.Line, Invariant($"at most {log.Limits.MaxNesting} levels"), "Blocks are nested too deeply");
+        }
+
+        if (open.TryPeek(out var link))
+        {
+            link.Inner++;
         }
 
         var block = new JcampBlock(record.Line, open.Count > 0);
@@ -94,11 +103,12 @@ internal sealed class JcampBlock(int line, bool isInside)
         }
     }
 
-    private static void Close(JcampRecord record, Stack<JcampBlock> open, List<JcampBlock> blocks, ReadingLog log)
+    private static void Close(
+        ReadOnlySpan<byte> content, JcampRecord record, Stack<JcampBlock> open, List<JcampBlock> blocks, ReadingLog log)
     {
         if (open.TryPop(out var block))
         {
-            Finish(block, blocks, log);
+            Finish(content, block, blocks, log);
         }
         else
         {
@@ -106,11 +116,20 @@ internal sealed class JcampBlock(int line, bool isInside)
         }
     }
 
-    private static void Finish(JcampBlock block, List<JcampBlock> blocks, ReadingLog log)
+    private static void Finish(ReadOnlySpan<byte> content, JcampBlock block, List<JcampBlock> blocks, ReadingLog log)
     {
         if (!block.IsLink)
         {
             blocks.Add(block);
+            return;
+        }
+
+        var record = block.Records.Find(r => r.Label == "BLOCKS");
+        if (record.Label is not null
+            && AffnNumber.TryParse(JcampText.Keyword(content, record), out var stated)
+            && stated != block.Inner)
+        {
+            log.Warn("BLOCKS", record.Line, Invariant($"{stated} blocks are stated, but there are {block.Inner}"));
         }
     }
 }

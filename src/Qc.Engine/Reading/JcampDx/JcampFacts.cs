@@ -32,7 +32,7 @@ internal sealed class JcampFacts(JcampHeader header)
             AcquisitionTimeSeconds = AcquisitionTime(),
             RelaxationDelaySeconds = RelaxationDelay(),
             Scans = Scans(),
-            PulseAngleDegrees = Private("$PULSEANGLE", a => a is > 0 and <= 360),
+            PulseAngleDegrees = Private("$PULSEANGLE", "pulse angle", a => a is > 0 and <= 360),
             TemperatureKelvin = Temperature(),
             Labels = header.Labels,
         };
@@ -53,7 +53,7 @@ internal sealed class JcampFacts(JcampHeader header)
             return _log.Fail(label, header.LineOf(label), "an isotope such as ^1H", Unread(label));
         }
 
-        NotePrivate(label);
+        NotePrivate(label, "nucleus");
         return true;
     }
 
@@ -71,7 +71,7 @@ internal sealed class JcampFacts(JcampHeader header)
             frequency /= 1e6;
         }
 
-        NotePrivate(label);
+        NotePrivate(label, "observe frequency");
         return frequency is >= 1 and <= LargestMHz
             || _log.Fail(label, header.LineOf(label), "a frequency in MHz, 1 to 3000", Invariant($"The frequency is {frequency}"));
     }
@@ -91,7 +91,7 @@ internal sealed class JcampFacts(JcampHeader header)
             return null;
         }
 
-        NotePrivate(label);
+        NotePrivate(label, "frequency of 0 ppm");
         return zero;
     }
 
@@ -102,7 +102,7 @@ internal sealed class JcampFacts(JcampHeader header)
             var text = header.Text(label).Trim('<', '>', '"', '\'', ' ', '\n');
             if (text.Length > 0)
             {
-                NotePrivate(label);
+                NotePrivate(label, "solvent");
                 return text;
             }
         }
@@ -114,7 +114,7 @@ internal sealed class JcampFacts(JcampHeader header)
     {
         var label = header.Has(".AVERAGES") ? ".AVERAGES" : "$NS";
         return header.Fact(label) is { } scans && scans is >= 1 and <= int.MaxValue && scans == Math.Floor(scans)
-            ? Noted(label, (int)scans)
+            ? Noted(label, "number of scans", (int)scans)
             : null;
     }
 
@@ -127,13 +127,13 @@ internal sealed class JcampFacts(JcampHeader header)
 
         // Points count both parts, the width is that of complex sampling: time = points / (2 width).
         return header.Fact("$TD") is { } points && points > 1 && header.Fact("$SWH") is { } width && width > 0
-            ? Noted("$TD", points / (2 * width))
+            ? Noted("$TD", "acquisition time", points / (2 * width))
             : null;
     }
 
     private double? RelaxationDelay()
     {
-        if (Private("$RELAXATIONDELAY", d => d is >= 0 and < 1e5) is { } stated)
+        if (Private("$RELAXATIONDELAY", "relaxation delay", d => d is >= 0 and < 1e5) is { } stated)
         {
             return stated;
         }
@@ -144,7 +144,7 @@ internal sealed class JcampFacts(JcampHeader header)
             && items[0].StartsWith("(0..", StringComparison.Ordinal)
             && AffnNumber.TryParse(items[2], out var delay)
             && delay is >= 0 and < 1e5
-                ? Noted("$D", delay)
+                ? Noted("$D", "relaxation delay", delay)
                 : null;
     }
 
@@ -153,7 +153,7 @@ internal sealed class JcampFacts(JcampHeader header)
     {
         if (header.Fact("TEMPERATURE") is not { } stated)
         {
-            return Private("$TE", t => t is > 50 and < 1000);
+            return Private("$TE", "temperature", t => t is > 50 and < 1000);
         }
 
         var unit = header.Keyword("TEMPERATURE");
@@ -168,20 +168,20 @@ internal sealed class JcampFacts(JcampHeader header)
         return kelvin > 0 ? kelvin : null;
     }
 
-    private double? Private(string label, Func<double, bool> isPlausible) =>
-        header.Fact(label) is { } value && isPlausible(value) ? Noted(label, value) : null;
+    private double? Private(string label, string fact, Func<double, bool> isPlausible) =>
+        header.Fact(label) is { } value && isPlausible(value) ? Noted(label, fact, value) : null;
 
-    private T Noted<T>(string label, T value)
+    private T Noted<T>(string label, string fact, T value)
     {
-        NotePrivate(label);
+        NotePrivate(label, fact);
         return value;
     }
 
-    private void NotePrivate(string label)
+    private void NotePrivate(string label, string fact)
     {
         if (label.StartsWith('$'))
         {
-            _log.Warn(label, header.LineOf(label), "Taken from a private label, as the standard one is not there");
+            _log.Warn(label, header.LineOf(label), $"The {fact} is taken from a private label, as no standard one states it");
         }
     }
 

@@ -79,7 +79,7 @@ internal static class JcampFid
     }
 
     // .SHIFT REFERENCE names a point of a spectrum that the FID is not yet; in measured FIDs it is often left over from another
-    // processing (4 to 8 ppm off in 4 of 9), so that only the frequency of 0 ppm counts.
+    // processing (0.4 to 8.5 ppm off in 4 of 11), so that only the frequency of 0 ppm counts.
     private static double? CentrePpm(JcampHeader header, AcquisitionFacts facts)
     {
         if (facts.ZeroPpmFrequencyMHz is { } zero)

@@ -5,10 +5,6 @@ namespace Qc.Engine.Reading.JcampDx;
 /// <summary>Puts a spectrum on a ppm axis that descends.</summary>
 internal static class JcampSpectrum
 {
-    private const double WidestProtonPpm = 200;
-    private const double WidestPpm = 5000;
-    private const double NarrowestPpm = 0.2;
-
     public static bool TryBuild(
         JcampHeader header, AcquisitionFacts facts, JcampData data, out SpectrumMeasurement? spectrum)
     {
@@ -48,7 +44,7 @@ internal static class JcampSpectrum
 
         switch (data.Units)
         {
-            case "PPM":
+            case "PPM" or "PARTSPERMILLION":
                 axis = (data.First, data.Step, header.Keyword("$AXISREFERENCED") != "NO");
                 NoteOtherReference(reference, axis, log);
                 break;
@@ -59,13 +55,8 @@ internal static class JcampSpectrum
                 return log.Fail("XUNITS", header.LineOf("XUNITS"), "HZ or PPM", $"The unit '{JcampHeader.Shown(data.Units)}' is not read");
         }
 
-        var extent = Math.Abs(axis.Step) * (points - 1);
-        var widest = facts.Nucleus == "1H" ? WidestProtonPpm : WidestPpm;
-        return (extent >= NarrowestPpm && extent <= widest && Math.Abs(axis.First) <= widest) || log.Fail(
-            "XUNITS",
-            header.LineOf("XUNITS"),
-            Invariant($"an axis of {NarrowestPpm} to {widest} ppm; HZ and PPM may have been confused"),
-            Invariant($"The axis begins at {axis.First} ppm and spans {extent} ppm"));
+        return PpmWindow.Check(
+            axis.First, axis.Step, points, facts.Nucleus, "XUNITS", header.LineOf("XUNITS"), log);
     }
 
     private static (double First, double Step, bool IsReferenced) FromHertz(

@@ -154,6 +154,11 @@ internal sealed class NmrMlReader
         }
 
         var step = (last - first) / Intervals(array, facts, first, last, real.Length);
+        if (!PpmWindow.Check(first, step, real.Length, facts.Nucleus, "xAxis", array.Line, _log))
+        {
+            return false;
+        }
+
         if (step > 0)
         {
             first += step * (real.Length - 1);
