@@ -23,7 +23,8 @@ internal static class GraphReader
 
         return new Molecule(
             [.. graph.Atoms.Select((atom, i) => new Atom(
-                i, atom.Z, atom.Chg, atom.ImpHs, aromaticAtoms.Contains(i), atom.Isotope, handedness.GetValueOrDefault(i)))],
+                i, atom.Z, atom.Chg, atom.ImpHs, aromaticAtoms.Contains(i), atom.Isotope,
+                handedness.GetValueOrDefault(i), WindingOf(graph, i)))],
             [.. graph.Bonds.Select((bond, i) => BondOf(bond, aromaticBonds.Contains(i), geometry))],
             [.. (marks?.AtomRings ?? []).Select(ring => ring.ToImmutableArray())]);
     }
@@ -39,6 +40,24 @@ internal static class GraphReader
 
         return new Bond(
             a, b, bond.Bo, isAromatic, geometry.GetValueOrDefault(Ends(a, b)), sideOfA, sideOfB, bond.Stereo == "cis");
+    }
+
+    // The toolkit states the turn of the neighbours in bond order, seen from the first, a hydrogen or lone pair coming last.
+    // With four neighbours sorting them is all there is to do; with three, (n1; n2 n3 H) is the mirror image of (H; n1 n2 n3).
+    private static Winding WindingOf(ToolkitGraph graph, int atom)
+    {
+        if (graph.Atoms[atom].Stereo is not ("cw" or "ccw"))
+        {
+            return Winding.None;
+        }
+
+        int[] neighbours = [.. graph.Bonds.Where(bond => bond.Atoms.Contains(atom))
+            .Select(bond => bond.Atoms[0] == atom ? bond.Atoms[1] : bond.Atoms[0])];
+        int inversions = neighbours.SelectMany((first, i) => neighbours.Skip(i + 1).Where(later => later < first)).Count();
+        bool clockwise = graph.Atoms[atom].Stereo == "cw";
+        clockwise ^= inversions % 2 == 1;
+        clockwise ^= neighbours.Length == 3;
+        return clockwise ? Winding.Clockwise : Winding.Counterclockwise;
     }
 
     private static (int Low, int High) Ends(int a, int b) => (Math.Min(a, b), Math.Max(a, b));

@@ -46,7 +46,7 @@ internal sealed record ToolkitGraph(
     IReadOnlyList<ToolkitExtension> Extensions);
 
 /// <summary>An atom; the defaults are those the file states for every molecule.</summary>
-internal sealed record ToolkitAtom(int Z = 6, int ImpHs = 0, int Chg = 0, int NRad = 0, int Isotope = 0);
+internal sealed record ToolkitAtom(int Z = 6, int ImpHs = 0, int Chg = 0, int NRad = 0, int Isotope = 0, string Stereo = "unspecified");
 
 /// <summary>A bond with Kekulé order.</summary>
 internal sealed record ToolkitBond(

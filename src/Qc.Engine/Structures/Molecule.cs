@@ -15,6 +15,22 @@ public enum Handedness
     S,
 }
 
+/// <summary>
+/// Sense in which an atom's neighbours turn: seen from its hydrogen or lone pair where it has one, else from its heavy
+/// neighbour of lowest index, the other three in ascending index. Unlike R and S it needs no ranking of substituents.
+/// </summary>
+public enum Winding
+{
+    /// <summary>Not drawn.</summary>
+    None,
+
+    /// <summary>Clockwise.</summary>
+    Clockwise,
+
+    /// <summary>Counterclockwise.</summary>
+    Counterclockwise,
+}
+
 /// <summary>Geometry of a double bond.</summary>
 public enum DoubleBondGeometry
 {
@@ -36,6 +52,7 @@ public enum DoubleBondGeometry
 /// <param name="IsAromatic">Whether the atom is in an aromatic ring (toolkit's model).</param>
 /// <param name="Isotope">Mass number where one is stated, else 0.</param>
 /// <param name="Handedness">CIP descriptor where specified.</param>
+/// <param name="Winding">Sense of the neighbours where drawn; also where no CIP descriptor exists (cis and trans on rings).</param>
 public sealed record Atom(
     int Index,
     int AtomicNumber,
@@ -43,7 +60,8 @@ public sealed record Atom(
     int HydrogenCount,
     bool IsAromatic,
     int Isotope = 0,
-    Handedness Handedness = Handedness.None);
+    Handedness Handedness = Handedness.None,
+    Winding Winding = Winding.None);
 
 /// <summary>A bond, Kekulé order beside the aromatic mark.</summary>
 /// <param name="A">Index of one atom.</param>
