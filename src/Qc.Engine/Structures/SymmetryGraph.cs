@@ -34,11 +34,14 @@ internal sealed class SymmetryGraph
             .ToImmutableArray())];
         var kinds = molecule.Atoms.Select(atom => Kind(molecule, atom, averaged[atom.Index])).ToArray();
         var ranks = kinds.Distinct().Order().Select((kind, rank) => (kind, rank)).ToDictionary(entry => entry.kind, entry => entry.rank);
-        Kinds = [.. kinds.Select(kind => ranks[kind])];
         Components = ComponentsOf();
+        Kinds = Refined([.. kinds.Select(kind => ranks[kind])]);
     }
 
-    /// <summary>Kind of each node: element, isotope, charge, hydrogens, degree.</summary>
+    /// <summary>
+    /// Kind of each node: element, isotope, charge, hydrogens and degree, of it and in the same way of all its surroundings.
+    /// Nodes of different kind are related by no symmetry; arrangement in space is not looked at.
+    /// </summary>
     public ImmutableArray<int> Kinds { get; }
 
     /// <summary>Nodes of each connected component, ascending.</summary>
@@ -49,6 +52,14 @@ internal sealed class SymmetryGraph
 
     /// <summary>The component a node belongs to.</summary>
     public ImmutableArray<int> ComponentOf(int atom) => Components.First(component => component.Contains(atom));
+
+    private ImmutableArray<int> Refined(int[] kinds)
+    {
+        int[] copy = [.. kinds];
+        var bare = new SymmetrySearch.Side(this, [.. Enumerable.Range(0, kinds.Length)], [], mirrored: false);
+        Refinement.Run(bare, bare, kinds, copy);
+        return [.. kinds];
+    }
 
     private static (int Element, int Isotope, int Charge, int Hydrogens, int Degree, bool Aromatic) Kind(
         Molecule molecule, Atom atom, bool averaged) =>

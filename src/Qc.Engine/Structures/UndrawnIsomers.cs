@@ -19,7 +19,7 @@ internal static class UndrawnIsomers
     /// <summary>Arrangements of each isomer; at least one.</summary>
     public static IEnumerable<ImmutableArray<StereoUnit>> Of(Molecule molecule, SymmetryGraph graph)
     {
-        int[] colours = BareColours(graph);
+        int[] colours = [.. graph.Kinds];
         ImmutableArray<StereoUnit> units = Bridgeheads.Settle(
             molecule, [.. StereoPerception.Units(molecule).Select(unit => unit.IsDrawn ? unit : Canonical(unit, colours))]);
         int[] free = [.. Enumerable.Range(0, units.Length).Where(i => !units[i].IsDrawn && Matters(molecule, units[i], units, colours))];
@@ -74,15 +74,5 @@ internal static class UndrawnIsomers
         IGrouping<int, int>[] alike = [.. unit.Neighbours.Where(n => n >= 0).GroupBy(n => colours[n]).Where(cell => cell.Count() > 1)];
         return alike is [var pair] && pair.Count() == 2
             && molecule.Rings.Any(ring => ring.Contains(unit.Owners[0]) && pair.All(ring.Contains));
-    }
-
-    private static int[] BareColours(SymmetryGraph graph)
-    {
-        int[] colours = [.. graph.Kinds];
-        int[] copy = [.. graph.Kinds];
-        ImmutableArray<int> all = [.. Enumerable.Range(0, colours.Length)];
-        var bare = new SymmetrySearch.Side(graph, all, [], mirrored: false);
-        Refinement.Run(bare, bare, colours, copy);
-        return colours;
     }
 }
