@@ -1,0 +1,93 @@
+using Microsoft.AspNetCore.Identity;
+using Microsoft.AspNetCore.Identity.EntityFrameworkCore;
+using Microsoft.EntityFrameworkCore;
+using Qc.Records.Audit;
+using Qc.Records.Lots;
+using Qc.Records.People;
+using Qc.Records.Products;
+using Qc.Records.Reviews;
+
+namespace Qc.Records;
+
+/// <summary>The store of record. Tables and constraints are in Schema/*.sql; this maps them.</summary>
+public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : IdentityDbContext<Person, IdentityRole, string>(options)
+{
+    /// <summary>Products.</summary>
+    public DbSet<Product> Products => Set<Product>();
+
+    /// <summary>Specification versions.</summary>
+    public DbSet<SpecificationVersion> SpecificationVersions => Set<SpecificationVersion>();
+
+    /// <summary>Approvals and retirements.</summary>
+    public DbSet<SpecificationEvent> SpecificationEvents => Set<SpecificationEvent>();
+
+    /// <summary>Lots.</summary>
+    public DbSet<Lot> Lots => Set<Lot>();
+
+    /// <summary>Spectra as received.</summary>
+    public DbSet<LotSpectrum> LotSpectra => Set<LotSpectrum>();
+
+    /// <summary>States of lots.</summary>
+    public DbSet<LotEvent> LotEvents => Set<LotEvent>();
+
+    /// <summary>Checks.</summary>
+    public DbSet<Computation> Computations => Set<Computation>();
+
+    /// <summary>Curves of checks.</summary>
+    public DbSet<Trace> Traces => Set<Trace>();
+
+    /// <summary>Decisions.</summary>
+    public DbSet<Review> Reviews => Set<Review>();
+
+    /// <summary>Electronic signatures.</summary>
+    public DbSet<Signature> Signatures => Set<Signature>();
+
+    /// <summary>Certificates.</summary>
+    public DbSet<Certificate> Certificates => Set<Certificate>();
+
+    /// <summary>Keys of repeated submissions.</summary>
+    public DbSet<IdempotencyRecord> IdempotencyRecords => Set<IdempotencyRecord>();
+
+    /// <summary>LIMS keys.</summary>
+    public DbSet<LimsKey> LimsKeys => Set<LimsKey>();
+
+    /// <summary>Their revocations.</summary>
+    public DbSet<LimsKeyRevocation> LimsKeyRevocations => Set<LimsKeyRevocation>();
+
+    /// <summary>The audit log.</summary>
+    public DbSet<AuditRow> AuditRows => Set<AuditRow>();
+
+    /// <summary>Its Merkle tree.</summary>
+    public DbSet<MerkleNode> MerkleNodes => Set<MerkleNode>();
+
+    /// <summary>Signed heads.</summary>
+    public DbSet<TreeHeadRow> TreeHeads => Set<TreeHeadRow>();
+
+    /// <summary>Options for a connection string, with the naming that the schema uses.</summary>
+    public static void Configure(DbContextOptionsBuilder builder, string connectionString) =>
+        builder.UseNpgsql(connectionString).UseSnakeCaseNamingConvention();
+
+    /// <inheritdoc/>
+    protected override void OnModelCreating(ModelBuilder builder)
+    {
+        base.OnModelCreating(builder);
+        builder.HasDefaultSchema("qc");
+        builder.Entity<Person>().ToTable("people", "people");
+        builder.Entity<IdentityRole>().ToTable("roles", "people");
+        builder.Entity<IdentityUserRole<string>>().ToTable("person_roles", "people");
+        builder.Entity<IdentityUserClaim<string>>().ToTable("person_claims", "people");
+        builder.Entity<IdentityRoleClaim<string>>().ToTable("role_claims", "people");
+        builder.Entity<IdentityUserLogin<string>>().ToTable("person_logins", "people");
+        builder.Entity<IdentityUserToken<string>>().ToTable("person_tokens", "people");
+        builder.Entity<LotSpectrum>().HasKey(s => new { s.LotId, s.Number });
+        builder.Entity<LotEvent>().Property(e => e.Id).UseIdentityAlwaysColumn();
+        builder.Entity<Trace>().HasKey(t => new { t.ComputationId, t.SpectrumNumber });
+        builder.Entity<Certificate>().HasKey(c => c.Number);
+        builder.Entity<IdempotencyRecord>().HasKey(r => new { r.Principal, r.Key });
+        builder.Entity<LimsKeyRevocation>().HasKey(r => r.KeyId);
+        builder.Entity<AuditRow>().HasKey(r => r.Index);
+        builder.Entity<AuditRow>().Property(r => r.Index).ValueGeneratedNever();
+        builder.Entity<MerkleNode>().HasKey(n => new { n.Level, n.Index });
+        builder.Entity<TreeHeadRow>().ToTable("tree_heads").HasKey(h => new { h.Size, h.At });
+    }
+}
