@@ -42,6 +42,7 @@ internal static class AromaticShifts
             }
         }
 
+        sum.AddUncertainty(HasPeriSubstituent(molecule, carbon) ? UncertaintyModel.PeriPpm : 0);
         return sum.ToEstimate();
     }
 
@@ -91,6 +92,11 @@ internal static class AromaticShifts
     private static bool IsAcceptor(PerceivedMolecule molecule, int root) =>
         molecule[root].AtomicNumber is 6 or 7
         && molecule.Molecule.BondsOf(root).Any(bond => molecule.Molecule.Bonds[bond].Order == 2 && molecule[molecule.Molecule.Other(bond, root)].AtomicNumber == 8);
+
+    private static bool HasPeriSubstituent(PerceivedMolecule molecule, int carbon) => molecule.Neighbours(carbon)
+        .Where(junction => IsFusedAromatic(molecule, junction))
+        .SelectMany(junction => molecule.Neighbours(junction))
+        .Any(atom => atom != carbon && !IsFusedAromatic(molecule, atom) && Exocyclic(molecule, atom).Any());
 
     private static bool IsFusedAromatic(PerceivedMolecule molecule, int atom) =>
         molecule.RingsOf(atom).Count(ring => molecule.Ring(ring).All(member => molecule[member].IsAromatic)) > 1;

@@ -28,7 +28,10 @@ internal static class UncertaintyModel
     public const double OrthoPairPpm = 0.07;
 
     /// <summary>A benzene increment used on another aromatic ring.</summary>
-    public const double OtherRingPpm = 0.12;
+    public const double OtherRingPpm = 0.14;
+
+    /// <summary>A substituent peri to the proton, on the neighbouring ring.</summary>
+    public const double PeriPpm = 0.20;
 
     /// <summary>An alkene whose geometry is not stated, beside half the difference of the two.</summary>
     public const double NoGeometryPpm = 0.05;

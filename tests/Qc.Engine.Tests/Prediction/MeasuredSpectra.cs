@@ -6,22 +6,22 @@ namespace Qc.Engine.Tests.Prediction;
 /// <summary>A measured signal of protons on carbon.</summary>
 public sealed record MeasuredSignal(double ShiftPpm, string Multiplicity, ImmutableArray<double> CouplingsHertz, int Protons, string Label);
 
-/// <summary>One row of tests/reference/molecules.txt.</summary>
+/// <summary>One row of tests/reference/molecules.txt or molecules-recalled.txt.</summary>
 public sealed record MeasuredSpectrum(int Row, string Id, string Name, string Smiles, string Solvent, ImmutableArray<MeasuredSignal> Signals)
 {
     /// <summary>The rule by which the rows are split: odd rows set the uncertainty model, even rows check it.</summary>
     public bool IsForFit => Row % 2 == 1;
 }
 
-/// <summary>Reads tests/reference/molecules.txt.</summary>
+/// <summary>Reads the measured spectra of tests/reference.</summary>
 public static class MeasuredSpectra
 {
     /// <summary>Ids of rows whose substance is itself a row of a prediction table; they check nothing and are counted apart.</summary>
     public static readonly ImmutableHashSet<string> InTables =
         [.. File.ReadLines(PathOf("molecules-in-tables.txt")).Where(line => line.Length > 0 && line[0] != '#').Select(line => line.Split('|')[0])];
 
-    /// <summary>All rows.</summary>
-    public static readonly ImmutableArray<MeasuredSpectrum> All = [.. Read()];
+    /// <summary>All rows, file by file.</summary>
+    public static readonly ImmutableArray<MeasuredSpectrum> All = [.. Read("molecules.txt"), .. Read("molecules-recalled.txt")];
 
     /// <summary>A file of tests/reference.</summary>
     public static string PathOf(string file)
@@ -35,10 +35,10 @@ public static class MeasuredSpectra
         return Path.Combine(folder ?? throw new FileNotFoundException("The root of the repository was not found."), "tests", "reference", file);
     }
 
-    private static IEnumerable<MeasuredSpectrum> Read()
+    private static IEnumerable<MeasuredSpectrum> Read(string file)
     {
         int row = 0;
-        foreach (string line in File.ReadLines(PathOf("molecules.txt")).Where(line => line.Length > 0 && line[0] != '#'))
+        foreach (string line in File.ReadLines(PathOf(file)).Where(line => line.Length > 0 && line[0] != '#'))
         {
             string[] fields = line.Split('|');
             row++;
