@@ -94,8 +94,10 @@ internal static class OlefinShifts
         string variant = substituent.Is("alkyl") && SharesSmallRing(molecule, carbon, partner, root) ? "/ring"
             : IsConjugatedFurther(molecule, carbon, partner, root) ? "/conjugated"
             : "";
-        var special = new Substituent(substituent.Name, [.. substituent.Names.Select(name => name with { Name = name.Name + variant })]);
-        return Increments.Find(place, special) ?? Increments.Find(place, substituent);
+        return Increments.Find(place, substituent with
+        {
+            Names = [.. substituent.Names.SelectMany(name => new[] { name with { Name = name.Name + variant }, name })],
+        });
     }
 
     private static bool HasAcceptor(PerceivedMolecule molecule, int atom, int partner) =>

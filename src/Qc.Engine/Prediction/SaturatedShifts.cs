@@ -14,6 +14,7 @@ namespace Qc.Engine.Prediction;
 internal static class SaturatedShifts
 {
     private const string Alkyl = "alkyl";
+    private const double VarianceTolerance = 1e-9;
     private static readonly FactTable SchemeA = FactTable.Load("alkyl-increments");
     private static readonly FactTable SchemeB = FactTable.Load("methylene-constants");
     private static readonly FactTable SchemeC = FactTable.Load("methine-constants");
@@ -121,7 +122,7 @@ internal static class SaturatedShifts
         {
             foreach (ImmutableArray<int> match in parent.Pattern.Matches(molecule, carbon))
             {
-                if (WithParent(parent.Fact, match, influences) is not { } sum)
+                if (WithParent(parent.Fact, match, influences, molecule[carbon].HydrogenCount) is not { } sum)
                 {
                     continue;
                 }
@@ -129,8 +130,8 @@ internal static class SaturatedShifts
                 double added = sum.Variance - (parent.Fact.StandardUncertainty * parent.Fact.StandardUncertainty);
                 int detail = parent.Pattern.Detail;
                 if (best is not { } other
-                    || added < other.Added - Tolerance
-                    || (added < other.Added + Tolerance && detail > other.Detail))
+                    || added < other.Added - VarianceTolerance
+                    || (added < other.Added + VarianceTolerance && detail > other.Detail))
                 {
                     best = (sum, added, detail);
                 }
@@ -140,9 +141,10 @@ internal static class SaturatedShifts
         return best?.Sum.ToEstimate();
     }
 
-    private static ShiftSum? WithParent(Fact parent, ImmutableArray<int> match, ImmutableArray<Influence> influences)
+    private static ShiftSum? WithParent(Fact parent, ImmutableArray<int> match, ImmutableArray<Influence> influences, int hydrogens)
     {
         var sum = new ShiftSum(parent);
+        bool isStrongMethine = hydrogens == 1 && influences.Any(influence => influence.Place == Influence.Alpha && IsStrong(influence));
         foreach (Influence influence in influences)
         {
             if (match.Contains(influence.Root) || influence.IsAcrossHeteroatom)
@@ -158,14 +160,15 @@ internal static class SaturatedShifts
             if (row.Fact.Environment != Alkyl)
             {
                 bool stacked = influence.Place == Influence.Alpha;
-                sum.Add(row.Fact, row.IsBorrowed, stacked ? UncertaintyModel.StackedAlphaPpm : 0);
+                Fact increment = influence.Place == Influence.Beta && isStrongMethine
+                    ? row.Fact with { Value = UncertaintyModel.MethineBetaShare * row.Fact.Value }
+                    : row.Fact;
+                sum.Add(increment, row.IsBorrowed, stacked ? UncertaintyModel.StackedAlphaPpm : 0);
             }
         }
 
         return sum;
     }
-
-    private const double Tolerance = 1e-9;
 
     private static bool IsStrong(Influence influence) => !influence.Substituent.Is(Alkyl);
 

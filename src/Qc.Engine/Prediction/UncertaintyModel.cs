@@ -15,6 +15,9 @@ internal static class UncertaintyModel
     /// <summary>A methine by scheme A, whose alpha values are those of methylene.</summary>
     public const double MethinePpm = 0.25;
 
+    /// <summary>Share of a beta increment that counts for a methine with a strong substituent (scheme C has none there).</summary>
+    public const double MethineBetaShare = 0.3;
+
     /// <summary>A CHXYZ by scheme B.</summary>
     public const double ThreeConstantsPpm = 0.30;
 
@@ -43,7 +46,7 @@ internal static class UncertaintyModel
     public const double DiastereotopicPpm = 0.08;
 
     /// <summary>The same in a ring, where one is axial or beside a substituent.</summary>
-    public const double DiastereotopicInRingPpm = 0.20;
+    public const double DiastereotopicInRingPpm = 0.35;
 
     /// <summary>A solvent for which there is no table.</summary>
     public const double UnknownSolventPpm = 0.20;

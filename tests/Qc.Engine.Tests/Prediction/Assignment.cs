@@ -4,21 +4,25 @@ namespace Qc.Engine.Tests.Prediction;
 
 /// <summary>
 /// Lays predicted groups on measured signals: every group in one signal, every signal filled to its proton count; of all
-/// such ways the one with the smallest sum of deviations. Exhaustive, as the molecules are small.
+/// such ways the one with the smallest sum of costs. Exhaustive, as the molecules are small.
 /// </summary>
 public static class Assignment
 {
     /// <summary>For each group the index of its signal, or null where the counts cannot be matched.</summary>
-    public static ImmutableArray<int>? Of(ImmutableArray<(double ShiftPpm, int Protons)> groups, ImmutableArray<MeasuredSignal> signals)
+    /// <param name="groups">Protons of each group.</param>
+    /// <param name="signals">Protons of each signal.</param>
+    /// <param name="cost">Cost of laying a group on a signal.</param>
+    public static ImmutableArray<int>? Of(ImmutableArray<int> groups, ImmutableArray<int> signals, Func<int, int, double> cost)
     {
-        var free = signals.Select(signal => signal.Protons).ToArray();
+        var free = signals.ToArray();
+        double[][] costs = [.. groups.Select((_, group) => signals.Select((_, signal) => cost(group, signal)).ToArray())];
         var trial = new int[groups.Length];
         ImmutableArray<int>? best = null;
         double bestCost = double.PositiveInfinity;
 
-        void Place(int group, double cost)
+        void Place(int group, double spent)
         {
-            if (cost >= bestCost)
+            if (spent >= bestCost)
             {
                 return;
             }
@@ -27,7 +31,7 @@ public static class Assignment
             {
                 if (free.All(left => left == 0))
                 {
-                    (bestCost, best) = (cost, [.. trial]);
+                    (bestCost, best) = (spent, [.. trial]);
                 }
 
                 return;
@@ -35,12 +39,12 @@ public static class Assignment
 
             for (int signal = 0; signal < free.Length; signal++)
             {
-                if (free[signal] >= groups[group].Protons)
+                if (free[signal] >= groups[group])
                 {
-                    free[signal] -= groups[group].Protons;
+                    free[signal] -= groups[group];
                     trial[group] = signal;
-                    Place(group + 1, cost + Math.Abs(groups[group].ShiftPpm - signals[signal].ShiftPpm));
-                    free[signal] += groups[group].Protons;
+                    Place(group + 1, spent + costs[group][signal]);
+                    free[signal] += groups[group];
                 }
             }
         }

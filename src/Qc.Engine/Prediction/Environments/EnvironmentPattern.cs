@@ -12,7 +12,7 @@ namespace Qc.Engine.Prediction.Environments;
 /// bond      = "-" single | "=" double | "#" triple | ":" aromatic | "~" any; never left out
 /// atom      = symbol | "[" symbol { "," symbol } { ";" property } "]" | "{" name "}" ; then "@" on the far atom of a coupling
 /// symbol    = element, e.g. C O Cl (not aromatic) | c n o s (aromatic) | "*" any | "X" F, Cl, Br or I | "Q" neither C nor H
-/// property  = H0 .. H4 hydrogens | D1 .. D4 heavy neighbours | sp sp2 sp3 | r in a ring | r0 in none | r3 .. r9 in a ring of that size
+/// property  = H0 .. H4 hydrogens | D1 .. D4 heavy neighbours | D+ two of them or more | sp sp2 sp3 | r in a ring | r0 in none | r3 .. r9 in a ring of that size
 ///           | R1 in one ring only | R2 in two or more | + | - | 0 charge
 /// name      = a substituent of Data/substituents.tsv, or a class that it belongs to
 /// </code>
@@ -26,6 +26,7 @@ internal sealed class EnvironmentPattern
     {
         Text = text;
         _atoms = atoms;
+        Detail = atoms.Sum(atom => 2 + atom.Properties.Sum(property => property[0] == 'r' ? 5 : 1));
         End = -1;
         for (int i = 0; i < atoms.Length; i++)
         {
@@ -60,8 +61,8 @@ internal sealed class EnvironmentPattern
         }
     }
 
-    /// <summary>How much the pattern says: two for an atom, one for a property.</summary>
-    public int Detail => _atoms.Sum(atom => 2 + atom.Properties.Length);
+    /// <summary>How much the pattern says: two for an atom, one for a property, five for a ring (it matters more than a neighbour).</summary>
+    public int Detail { get; }
 
     /// <summary>
     /// All ways to lay the pattern on the molecule with its root at <paramref name="root"/>, atoms in written order.

@@ -30,7 +30,7 @@ internal sealed record PatternAtom(
         symbol is "*" or "X" or "Q" or "c" or "n" or "o" or "s" || Elements.ContainsKey(symbol);
 
     /// <summary>Whether the property is one of the notation's.</summary>
-    internal static bool IsProperty(string property) => property is "sp" or "sp2" or "sp3" or "r" or "R1" or "R2" or "+" or "-" or "0"
+    internal static bool IsProperty(string property) => property is "sp" or "sp2" or "sp3" or "r" or "D+" or "R1" or "R2" or "+" or "-" or "0"
         || (property.Length == 2 && property[0] is 'H' or 'D' or 'r' && char.IsAsciiDigit(property[^1]));
 
     /// <summary>Whether an atom of the molecule fits; <paramref name="from"/> is the atom it hangs on.</summary>
@@ -74,6 +74,7 @@ internal sealed record PatternAtom(
         "r" => molecule.RingsOf(atom).Length > 0,
         "R1" => molecule.RingsOf(atom).Length == 1,
         "R2" => molecule.RingsOf(atom).Length > 1,
+        "D+" => molecule.Neighbours(atom).Length > 1,
         "r0" => molecule.RingsOf(atom).Length == 0,
         "+" => molecule[atom].FormalCharge > 0,
         "-" => molecule[atom].FormalCharge < 0,
