@@ -55,7 +55,7 @@ internal static class SaturatedShifts
             }
 
             bool stacked = influence.Place == Influence.Alpha && IsStrong(influence) && strong++ > 0;
-            sum.Add(row.Fact, row.IsBorrowed, stacked ? UncertaintyModel.StackedAlphaPpm : 0);
+            Add(sum, row, stacked);
         }
 
         sum.AddUncertainty(UncertaintyModel.NoParentPpm);
@@ -81,7 +81,10 @@ internal static class SaturatedShifts
                 return null;
             }
 
-            sum.Add(row.Fact, row.IsBorrowed);
+            if (row.Fact.Value != 0)
+            {
+                sum.Add(row.Fact, row.IsBorrowed);
+            }
         }
 
         sum.AddUncertainty(UncertaintyModel.NoParentPpm);
@@ -107,7 +110,7 @@ internal static class SaturatedShifts
             }
 
             bool stacked = influence.Place == Influence.Alpha && IsStrong(influence) && strong++ > 0;
-            sum.Add(row.Fact, row.IsBorrowed, stacked ? UncertaintyModel.StackedAlphaPpm : 0);
+            Add(sum, row, stacked);
         }
 
         sum.AddUncertainty(UncertaintyModel.NoParentPpm);
@@ -138,6 +141,7 @@ internal static class SaturatedShifts
             }
         }
 
+        best?.Sum.AddUncertainty(IsInSubstitutedRing(molecule, carbon) ? UncertaintyModel.SubstitutedRingPpm : 0);
         return best?.Sum.ToEstimate();
     }
 
@@ -157,18 +161,28 @@ internal static class SaturatedShifts
                 return null;
             }
 
-            if (row.Fact.Environment != Alkyl)
-            {
-                bool stacked = influence.Place == Influence.Alpha;
-                Fact increment = influence.Place == Influence.Beta && isStrongMethine
-                    ? row.Fact with { Value = UncertaintyModel.MethineBetaShare * row.Fact.Value }
-                    : row.Fact;
-                sum.Add(increment, row.IsBorrowed, stacked ? UncertaintyModel.StackedAlphaPpm : 0);
-            }
+            Fact increment = influence.Place == Influence.Beta && isStrongMethine
+                ? row.Fact with { Value = UncertaintyModel.MethineBetaShare * row.Fact.Value }
+                : row.Fact;
+            Add(sum, (increment, row.IsBorrowed), influence.Place == Influence.Alpha);
         }
 
         return sum;
     }
+
+    /// <summary>Adds an increment, but for alkyl, which is the schemes' zero.</summary>
+    private static void Add(ShiftSum sum, (Fact Fact, bool IsBorrowed) row, bool isStacked)
+    {
+        if (row.Fact.Environment != Alkyl)
+        {
+            sum.Add(row.Fact, row.IsBorrowed, isStacked ? UncertaintyModel.StackedAlphaPpm : 0);
+        }
+    }
+
+    private static bool IsInSubstitutedRing(PerceivedMolecule molecule, int carbon) => molecule.RingsOf(carbon)
+        .SelectMany(ring => molecule.Ring(ring))
+        .Any(member => member != carbon && molecule.IsSaturatedCarbon(member)
+            && molecule.Neighbours(member).Any(atom => !molecule.RingsOf(member).Any(ring => molecule.Ring(ring).Contains(atom))));
 
     private static bool IsStrong(Influence influence) => !influence.Substituent.Is(Alkyl);
 

@@ -24,6 +24,9 @@ internal static class UncertaintyModel
     /// <summary>A ring for which there is no parent.</summary>
     public const double UnknownRingPpm = 0.25;
 
+    /// <summary>A ring that bears a substituent on another of its carbons, which the parent lacks.</summary>
+    public const double SubstitutedRingPpm = 0.12;
+
     /// <summary>A saturated carbon whose neighbouring groups are in no parent, even where increments exist.</summary>
     public const double NoParentPpm = 0.10;
 
