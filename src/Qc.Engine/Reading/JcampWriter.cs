@@ -33,7 +33,9 @@ public static class JcampWriter
     /// <param name="spectrum">At least 2 points.</param>
     /// <param name="form">Form of the ordinates.</param>
     /// <param name="factor">Value of one integer step; null: 1 where all ordinates are integers, else chosen.</param>
-    /// <exception cref="ArgumentException">Too few points, parts of different length, or ordinates that are not finite or too large for the factor.</exception>
+    /// <exception cref="ArgumentException">
+    /// Too few points, parts of different length, or ordinates that are not finite or too large for the factor.
+    /// </exception>
     public static byte[] Write(SpectrumMeasurement spectrum, OrdinateForm form = OrdinateForm.DifDup, double? factor = null)
     {
         ArgumentNullException.ThrowIfNull(spectrum);
@@ -80,7 +82,10 @@ public static class JcampWriter
         Label(text, ".DELAY", "(0, 0)");
         Label(text, ".ACQUISITION MODE", "SIMULTANEOUS");
         Label(text, "$GRPDLY", fid.GroupDelayPoints);
-        Label(text, "$SF", fid.CentrePpm is { } centre ? fid.Facts.ObserveFrequencyMHz / (1 + (centre * 1e-6)) : fid.Facts.ZeroPpmFrequencyMHz);
+        Label(
+            text,
+            "$SF",
+            fid.CentrePpm is { } centre ? fid.Facts.ObserveFrequencyMHz / (1 + (centre * 1e-6)) : fid.Facts.ZeroPpmFrequencyMHz);
         return Pages(text, "NMR FID", "FID", axis, ordinates);
     }
 
@@ -183,7 +188,9 @@ public static class JcampWriter
             _asTheyAre = form == OrdinateForm.Affn && factor is null;
             var isInteger = parts.All(p => p.All(v => v == Math.Floor(v)));
             Factor = factor ?? (_asTheyAre || (isInteger && largest < LargestInteger) ? 1 : largest / DefaultScale);
-            if (!parts.All(p => p.All(double.IsFinite)) || !(Math.Abs(Factor) > 0) || (!_asTheyAre && !(largest / Math.Abs(Factor) < LargestInteger)))
+            if (!parts.All(p => p.All(double.IsFinite))
+                || !(Math.Abs(Factor) > 0)
+                || (!_asTheyAre && !(largest / Math.Abs(Factor) < LargestInteger)))
             {
                 throw new ArgumentException("Ordinates must be finite and, divided by the factor, below 4e14.", nameof(parts));
             }

@@ -13,7 +13,8 @@ internal static partial class NucleusName
             return false;
         }
 
-        var plain = string.Concat(text.Where(c => !char.IsWhiteSpace(c) && c is not ('^' or '<' or '>' or '{' or '}' or '-' or '"' or '\'')));
+        var plain = string.Concat(text.Where(
+            c => !char.IsWhiteSpace(c) && c is not ('^' or '<' or '>' or '{' or '}' or '-' or '"' or '\'')));
         var match = MassFirst().Match(plain);
         match = match.Success ? match : SymbolFirst().Match(plain);
         if (!match.Success)

@@ -38,6 +38,15 @@ public class XColumnTests
         Assert.Equal([1, 2, 3, 4, 5, 6], Jcamp.Spectrum(text.With(Units, "##DELTAX= -100\n" + Units)).Real);
     }
 
+    [Fact]
+    public void A_column_that_counts_points_upwards_does_not_put_a_descending_axis_in_doubt()
+    {
+        var text = Jcamp.WithTable("0 1 2\n2 3 4\n4 5 6", 6, 1050, 550).With("XFACTOR= 1", "XFACTOR= 100");
+
+        Assert.Contains(Jcamp.Spectrum(text).Warnings, w => w.Message.Contains("counts points", StringComparison.Ordinal));
+        Assert.Equal(10.5, Jcamp.Spectrum(text).FirstPpm, 12);
+    }
+
     private static SpectrumMeasurement Spectrum(string table) => Jcamp.Spectrum(
         Jcamp.WithTable(table, 6, 500).With(Units, "##.SHIFT REFERENCE= INTERNAL, TMS, 1, 5\n" + Units));
 

@@ -100,7 +100,11 @@ internal sealed class JcampDataReader(ReadOnlyMemory<byte> content, JcampTables 
 
         if (real is null || (imaginary is not null && imaginary.Length != real.Length))
         {
-            return _log.Fail("NTUPLES", header.LineOf("NTUPLES"), "a real page, and an imaginary one as long if any", "A page is missing or short");
+            return _log.Fail(
+                "NTUPLES",
+                header.LineOf("NTUPLES"),
+                "a real page, and an imaginary one as long if any",
+                "A page is missing or short");
         }
 
         data = new JcampData(real, imaginary, axis!.First, step, axis.Units);

@@ -58,7 +58,11 @@ internal static class JcampFid
         dwell = data.Step * (unit ?? 0);
         if (unit is null)
         {
-            return log.Fail("UNITS", header.LineOf("UNITS"), "SECONDS or MICROSECONDS", $"The unit '{JcampHeader.Shown(data.Units)}' is not read");
+            return log.Fail(
+                "UNITS",
+                header.LineOf("UNITS"),
+                "SECONDS or MICROSECONDS",
+                $"The unit '{JcampHeader.Shown(data.Units)}' is not read");
         }
 
         if (!(1 / dwell is >= NarrowestHertz and <= WidestHertz))

@@ -20,7 +20,7 @@ internal static class JcampReader
     public static ReadingResult Read(ReadOnlyMemory<byte> content, ReadingLog fileLog)
     {
         if (!JcampRecord.TryScan(content.Span, fileLog, out var records)
-            || !JcampBlock.TryBuild(content.Span, records, fileLog, out var blocks))
+            || !JcampBlocks.TryBuild(content.Span, records, fileLog, out var blocks))
         {
             return ReadingResult.Rejected(fileLog.Error!);
         }
@@ -79,7 +79,10 @@ internal static class JcampReader
         var version = header.Keyword("JCAMPDX");
         if (!s_versions.Contains(version))
         {
-            log.Warn("JCAMPDX", header.LineOf("JCAMPDX"), $"The version '{JcampHeader.Shown(version)}' is not one of 4.24, 5.00, 5.01, 6.00");
+            log.Warn(
+                "JCAMPDX",
+                header.LineOf("JCAMPDX"),
+                $"The version '{JcampHeader.Shown(version)}' is not one of 4.24, 5.00, 5.01, 6.00");
         }
 
         if (!new JcampFacts(header).TryRead(out var facts)

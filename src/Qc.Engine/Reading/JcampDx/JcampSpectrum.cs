@@ -65,7 +65,10 @@ internal static class JcampSpectrum
         var log = header.Log;
         if (facts.ZeroPpmFrequencyMHz is null)
         {
-            log.Warn("XUNITS", header.LineOf("XUNITS"), "Hz are turned into ppm with the observe frequency; that of 0 ppm is not stated");
+            log.Warn(
+                "XUNITS",
+                header.LineOf("XUNITS"),
+                "Hz are turned into ppm with the observe frequency; that of 0 ppm is not stated");
         }
 
         var step = data.Step / (facts.ZeroPpmFrequencyMHz ?? facts.ObserveFrequencyMHz);
@@ -78,7 +81,10 @@ internal static class JcampSpectrum
         {
             if (header.Fact(label) is { } highest)
             {
-                log.Warn(label, header.LineOf(label), "Taken as the shift of the point of highest frequency, as there is no shift reference");
+                log.Warn(
+                    label,
+                    header.LineOf(label),
+                    "Taken as the shift of the point of highest frequency, as there is no shift reference");
                 return (step < 0 ? highest : highest - (step * (data.Real.Length - 1)), step, true);
             }
         }

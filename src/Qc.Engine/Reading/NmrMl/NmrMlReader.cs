@@ -70,12 +70,20 @@ internal sealed class NmrMlReader
         facts = null;
         if (Number("irradiationFrequency") is not { } frequency || frequency is < 1 or > 3000)
         {
-            return _log.Fail("irradiationFrequency", LineOf("irradiationFrequency"), "a frequency in MHz, 1 to 3000", "The transmitter frequency cannot be read");
+            return _log.Fail(
+                "irradiationFrequency",
+                LineOf("irradiationFrequency"),
+                "a frequency in MHz, 1 to 3000",
+                "The transmitter frequency cannot be read");
         }
 
         if (!NmrMlNucleus.TryParse(Text("acquisitionNucleus"), out var nucleus))
         {
-            return _log.Fail("acquisitionNucleus", LineOf("acquisitionNucleus"), "a nucleus such as 'hydrogen atom'", "The nucleus cannot be read");
+            return _log.Fail(
+                "acquisitionNucleus",
+                LineOf("acquisitionNucleus"),
+                "a nucleus such as 'hydrogen atom'",
+                "The nucleus cannot be read");
         }
 
         var scans = Number("numberOfScans");
@@ -116,7 +124,11 @@ internal sealed class NmrMlReader
 
         if (Number("sweepWidth", "hertz") is not { } width || width is < 10 or > 1e7)
         {
-            return _log.Fail("sweepWidth", LineOf("sweepWidth"), "a spectral width of 10 to 10000000 hertz", "The spectral width cannot be read");
+            return _log.Fail(
+                "sweepWidth",
+                LineOf("sweepWidth"),
+                "a spectral width of 10 to 10000000 hertz",
+                "The spectral width cannot be read");
         }
 
         double? centre = null;
