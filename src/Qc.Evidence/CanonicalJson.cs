@@ -13,7 +13,7 @@ public static class CanonicalJson
 {
     /// <summary>Canonical bytes of a JSON text.</summary>
     /// <exception cref="JsonException">The text is not JSON.</exception>
-    /// <exception cref="NotSupportedException">An object has two members of the same name.</exception>
+    /// <exception cref="NotSupportedException">An object has two members of the same name, or a number is beyond a double.</exception>
     public static byte[] Of(string json)
     {
         using JsonDocument document = JsonDocument.Parse(json);
@@ -117,6 +117,11 @@ public static class CanonicalJson
     /// </summary>
     private static string Number(double value)
     {
+        if (!double.IsFinite(value))
+        {
+            throw new NotSupportedException("A number is beyond the range of a double.");
+        }
+
         if (value == 0)
         {
             return "0";

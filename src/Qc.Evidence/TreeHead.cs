@@ -39,6 +39,7 @@ public sealed record TreeHead(string Origin, long Size, byte[] Root, DateTimeOff
     {
         Span<byte> bytes = stackalloc byte[128];
         return Convert.TryFromBase64String(signature, bytes, out int length)
+            && Convert.ToBase64String(bytes[..length]) == signature // One spelling only: spare bits of base64 hide nothing.
             && publicKey.VerifyData(Encoding.UTF8.GetBytes(text), bytes[..length], HashAlgorithmName.SHA256);
     }
 

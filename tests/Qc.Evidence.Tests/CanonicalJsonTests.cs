@@ -42,6 +42,14 @@ public class CanonicalJsonTests
         Assert.Equal(CanonicalJson.Of("""{"b":1,"a":{"d":2,"c":3}}"""), CanonicalJson.Of(""" { "a" : { "c":3, "d":2.0 } , "b":1e0 } """));
 
     [Fact]
+    public void A_name_outside_the_basic_plane_sorts_by_its_first_surrogate() =>
+        Assert.Equal("{\"\U0001F600\":1,\"\uFB33\":2}", Encoding.UTF8.GetString(CanonicalJson.Of("""{"\ufb33":2,"\ud83d\ude00":1}""")));
+
+    [Fact]
+    public void A_number_beyond_a_double_is_refused() =>
+        Assert.Throws<NotSupportedException>(() => CanonicalJson.Of("1e400"));
+
+    [Fact]
     public void A_member_that_occurs_twice_is_refused() =>
         Assert.ThrowsAny<Exception>(() => CanonicalJson.Of("""{"a":1,"a":2}"""));
 
