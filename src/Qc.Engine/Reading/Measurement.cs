@@ -74,7 +74,7 @@ public abstract record Measurement(AcquisitionFacts Facts, ImmutableArray<Readin
 /// <param name="Facts">What the header says.</param>
 /// <param name="Warnings">Departures and defaults.</param>
 /// <param name="Real">Real part, one value per complex point.</param>
-/// <param name="Imaginary">Imaginary part, same length.</param>
+/// <param name="Imaginary">Imaginary part, same length; for the sign of frequencies see <see cref="MeasurementReader"/>.</param>
 /// <param name="DwellSeconds">Time between complex points, in seconds; the spectral width is its inverse.</param>
 /// <param name="CentrePpm">Shift at the transmitter frequency where the header tells it, else null.</param>
 /// <param name="GroupDelayPoints">Delay of the digital filter in complex points where the header tells it (0: none), else null.</param>
@@ -91,7 +91,7 @@ public sealed record FidMeasurement(
 /// <param name="Facts">What the header says.</param>
 /// <param name="Warnings">Departures and defaults.</param>
 /// <param name="Real">Real part; index 0 is the highest ppm.</param>
-/// <param name="Imaginary">Imaginary part where stored, same length, else null.</param>
+/// <param name="Imaginary">Imaginary part where stored, same length, sign as written (see <see cref="MeasurementReader"/>), else null.</param>
 /// <param name="FirstPpm">Shift of point 0.</param>
 /// <param name="PpmPerPoint">Step along the axis, always negative.</param>
 /// <param name="AxisIsReferenced">False where the file gave no reference and 0 ppm is only nominal.</param>

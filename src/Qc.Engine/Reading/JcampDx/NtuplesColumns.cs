@@ -5,6 +5,8 @@ namespace Qc.Engine.Reading.JcampDx;
 /// <summary>The comma lists that declare the columns of NTUPLES; trailing items may be empty.</summary>
 internal sealed class NtuplesColumns(JcampHeader header)
 {
+    private const int MostColumns = 64;
+
     private readonly string[] _symbols = Items(header, "SYMBOL");
 
     /// <summary>Position of a symbol, or -1.</summary>
@@ -93,5 +95,5 @@ internal sealed class NtuplesColumns(JcampHeader header)
     }
 
     private static string[] Items(JcampHeader header, string label) =>
-        header.Text(label).Split(',', StringSplitOptions.TrimEntries);
+        header.Text(label).Split(',', MostColumns, StringSplitOptions.TrimEntries);
 }
