@@ -13,6 +13,7 @@ internal static class AromaticShifts
     private static readonly FactTable Benzene = FactTable.Load("benzene-increments");
     private static readonly PatternTable Bases = PatternTable.Load("aromatic-bases");
     private const string Ortho = "ortho";
+    private const string PeriPlace = "peri";
     private const string TwistedPlace = "ortho-twisted";
     private static readonly ImmutableArray<string> PlaceAtDistance = ["", Ortho, "meta", "para"];
 
@@ -42,7 +43,7 @@ internal static class AromaticShifts
             }
         }
 
-        sum.AddUncertainty(HasPeriSubstituent(molecule, carbon) ? UncertaintyModel.PeriPpm : 0);
+        AddPeri(molecule, carbon, sum);
         return sum.ToEstimate();
     }
 
@@ -93,10 +94,26 @@ internal static class AromaticShifts
         molecule[root].AtomicNumber is 6 or 7
         && molecule.Molecule.BondsOf(root).Any(bond => molecule.Molecule.Bonds[bond].Order == 2 && molecule[molecule.Molecule.Other(bond, root)].AtomicNumber == 8);
 
-    private static bool HasPeriSubstituent(PerceivedMolecule molecule, int carbon) => molecule.Neighbours(carbon)
-        .Where(junction => IsFusedAromatic(molecule, junction))
-        .SelectMany(junction => molecule.Neighbours(junction))
-        .Any(atom => atom != carbon && !IsFusedAromatic(molecule, atom) && Exocyclic(molecule, atom).Any());
+    private static void AddPeri(PerceivedMolecule molecule, int carbon, ShiftSum sum)
+    {
+        foreach (int junction in molecule.Neighbours(carbon).Where(atom => IsFusedAromatic(molecule, atom)))
+        {
+            foreach (int peri in molecule.Neighbours(junction).Where(atom => atom != carbon && !IsFusedAromatic(molecule, atom)))
+            {
+                foreach (int root in Exocyclic(molecule, peri))
+                {
+                    if (Benzene.Find(PeriPlace, molecule.SubstituentAt(peri, root)) is { } row)
+                    {
+                        sum.Add(row.Fact, row.IsBorrowed);
+                    }
+                    else
+                    {
+                        sum.AddUncertainty(UncertaintyModel.PeriPpm);
+                    }
+                }
+            }
+        }
+    }
 
     private static bool IsFusedAromatic(PerceivedMolecule molecule, int atom) =>
         molecule.RingsOf(atom).Count(ring => molecule.Ring(ring).All(member => molecule[member].IsAromatic)) > 1;

@@ -56,7 +56,7 @@ public static class Predictor
         }
 
         ShiftEstimate estimate = SaturatedShifts.Estimate(molecule, carbon);
-        double difference = molecule.RingsOf(carbon).Length > 0 ? UncertaintyModel.DiastereotopicInRingPpm : UncertaintyModel.DiastereotopicPpm;
+        double difference = SaturatedShifts.IsInSubstitutedRing(molecule, carbon) ? UncertaintyModel.DiastereotopicInRingPpm : UncertaintyModel.DiastereotopicPpm;
         return group.DiastereotopicPartner < 0 ? estimate : estimate with
         {
             StandardUncertaintyPpm = Math.Sqrt(

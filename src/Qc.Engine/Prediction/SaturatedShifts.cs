@@ -61,6 +61,7 @@ internal static class SaturatedShifts
         sum.AddUncertainty(UncertaintyModel.NoParentPpm);
         sum.AddUncertainty(molecule[carbon].HydrogenCount == 1 && strong > 0 ? UncertaintyModel.MethinePpm : 0);
         sum.AddUncertainty(molecule.RingsOf(carbon).Length > 0 ? UncertaintyModel.UnknownRingPpm : 0);
+        sum.AddUncertainty(CrowdingPpm(influences));
         return sum.ToEstimate();
     }
 
@@ -89,6 +90,7 @@ internal static class SaturatedShifts
 
         sum.AddUncertainty(UncertaintyModel.NoParentPpm);
         sum.AddUncertainty(molecule[carbon].HydrogenCount == 1 ? UncertaintyModel.ThreeConstantsPpm : 0);
+        sum.AddUncertainty(CrowdingPpm(influences));
         return sum.ToEstimate();
     }
 
@@ -114,6 +116,7 @@ internal static class SaturatedShifts
         }
 
         sum.AddUncertainty(UncertaintyModel.NoParentPpm);
+        sum.AddUncertainty(CrowdingPpm(influences));
         return sum.ToEstimate();
     }
 
@@ -179,10 +182,14 @@ internal static class SaturatedShifts
         }
     }
 
-    private static bool IsInSubstitutedRing(PerceivedMolecule molecule, int carbon) => molecule.RingsOf(carbon)
+    /// <summary>Whether the carbon is in a ring that bears a substituent on another of its saturated carbons.</summary>
+    internal static bool IsInSubstitutedRing(PerceivedMolecule molecule, int carbon) => molecule.RingsOf(carbon)
         .SelectMany(ring => molecule.Ring(ring))
         .Any(member => member != carbon && molecule.IsSaturatedCarbon(member)
             && molecule.Neighbours(member).Any(atom => !molecule.RingsOf(member).Any(ring => molecule.Ring(ring).Contains(atom))));
+
+    private static double CrowdingPpm(ImmutableArray<Influence> influences) =>
+        influences.Count(influence => influence.Place == Influence.Alpha && IsStrong(influence)) > 2 ? UncertaintyModel.ThreeStrongPpm : 0;
 
     private static bool IsStrong(Influence influence) => !influence.Substituent.Is(Alkyl);
 

@@ -21,6 +21,9 @@ internal static class UncertaintyModel
     /// <summary>A CHXYZ by scheme B.</summary>
     public const double ThreeConstantsPpm = 0.30;
 
+    /// <summary>Three strong substituents on one carbon, by any scheme.</summary>
+    public const double ThreeStrongPpm = 0.50;
+
     /// <summary>A ring for which there is no parent.</summary>
     public const double UnknownRingPpm = 0.25;
 
@@ -36,8 +39,8 @@ internal static class UncertaintyModel
     /// <summary>A benzene increment used on another aromatic ring.</summary>
     public const double OtherRingPpm = 0.14;
 
-    /// <summary>A substituent peri to the proton, on the neighbouring ring.</summary>
-    public const double PeriPpm = 0.20;
+    /// <summary>A substituent peri to the proton, on the neighbouring ring, for which there is no row.</summary>
+    public const double PeriPpm = 0.35;
 
     /// <summary>An alkene whose geometry is not stated, beside half the difference of the two.</summary>
     public const double NoGeometryPpm = 0.05;
@@ -48,7 +51,7 @@ internal static class UncertaintyModel
     /// <summary>A proton with a diastereotopic partner: the two differ by twice this, typically.</summary>
     public const double DiastereotopicPpm = 0.08;
 
-    /// <summary>The same in a ring, where one is axial or beside a substituent.</summary>
+    /// <summary>The same in a substituted ring, where one is axial or beside the substituent.</summary>
     public const double DiastereotopicInRingPpm = 0.35;
 
     /// <summary>A solvent for which there is no table.</summary>
