@@ -1,4 +1,5 @@
 using Qc.Chemistry.Toolkit;
+using Qc.Engine.Structures;
 
 namespace Qc.Chemistry;
 
@@ -86,12 +87,16 @@ public sealed class RdkitStructureReader : IStructureReader, IDisposable
         }
 
         ToolkitReply described = Settle(smiles);
-        return described is { Graph.Molecules: [var graph], Stereo: { } stereo, Smiles: { } final }
+        if (described is not { Graph.Molecules: [var graph], Stereo: { } stereo, Smiles: { } final })
+        {
+            return Refusal(new StructureError("The structure toolkit cannot read its own canonical form of this structure.", null));
+        }
+
+        Molecule molecule = GraphReader.Build(graph, stereo);
+        return MolarMass.IsKnown(molecule)
             ? new StructureResult(
-                new ReadStructure(
-                    GraphReader.Build(graph, stereo), final, described.Inchi ?? "", described.InchiKey ?? "", described.MolBlock ?? ""),
-                null)
-            : Refusal(new StructureError("The structure toolkit cannot read its own canonical form of this structure.", null));
+                new ReadStructure(molecule, final, described.Inchi ?? "", described.InchiKey ?? "", described.MolBlock ?? ""), null)
+            : Refusal(new StructureError("The structure holds an element or isotope without a standard atomic weight on file.", null));
     }
 
     // Writing and reading settles at once for almost every structure; stereo marks that turn out idle can take a second round.

@@ -94,6 +94,7 @@ public sealed class ReadingTests(ReaderFixture fixture)
     [InlineData("C*", "wildcard", null)]
     [InlineData("[CH3]", "radical", null)]
     [InlineData("CC~O", "search patterns", null)]
+    [InlineData("C[Pu]", "atomic weight", null)]
     public void What_cannot_be_read_is_refused_in_one_sentence(string smiles, string says, int? position)
     {
         StructureResult result = fixture.Reader.ReadSmiles(smiles);
@@ -101,6 +102,30 @@ public sealed class ReadingTests(ReaderFixture fixture)
         Assert.Null(result.Structure);
         Assert.Contains(says, result.Error!.Message, StringComparison.Ordinal);
         Assert.Equal(position, result.Error.Position);
+    }
+
+    // SMILES "@@" seen from the atom before: the rest clockwise. Hydrogen first, then F, Cl, Br: clockwise from the hydrogen.
+    // With the hydrogen second, seen from F: H, Cl, Br clockwise, which from H is F, Br, Cl clockwise.
+    [Theory]
+    [InlineData("[C@@H](F)(Cl)Br", true)]
+    [InlineData("F[C@@H](Cl)Br", false)]
+    [InlineData("F[C@@](Cl)(Br)I", true)]
+    public void Winding_is_that_of_the_SMILES(string smiles, bool clockwiseByElement)
+    {
+        Molecule molecule = fixture.Smiles(smiles).Molecule;
+        Atom centre = Assert.Single(molecule.Atoms, atom => atom.AtomicNumber == 6);
+
+        // Brought from index order to order of atomic number: each swap reverses the sense.
+        int[] elements = [.. molecule.NeighboursOf(centre.Index).Order().Select(i => molecule.Atoms[i].AtomicNumber)];
+        int swaps = elements.SelectMany((first, i) => elements.Skip(i + 1).Where(later => later < first)).Count();
+        Assert.Equal(clockwiseByElement, (centre.Winding == Winding.Clockwise) ^ (swaps % 2 == 1));
+    }
+
+    [Fact]
+    public void A_ring_keeps_cis_and_trans_though_no_centre_has_a_descriptor_of_its_own()
+    {
+        Assert.NotEqual(fixture.Smiles("C[C@H]1CC[C@@H](C)CC1").Smiles, fixture.Smiles("C[C@H]1CC[C@H](C)CC1").Smiles);
+        Assert.Equal(2, fixture.Smiles("C[C@H]1CC[C@@H](C)CC1").Molecule.Atoms.Count(atom => atom.Winding != Winding.None));
     }
 
     [Fact]

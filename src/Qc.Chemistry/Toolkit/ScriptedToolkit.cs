@@ -18,6 +18,9 @@ internal sealed class ScriptedToolkit(TimeSpan timeLimit) : IDisposable
     private static readonly TimeSpan StartLimit = TimeSpan.FromSeconds(60);
     private static readonly TimeSpan StartPoll = TimeSpan.FromMilliseconds(5);
 
+    // An interrupt that comes just before the script starts is lost; the next one is not.
+    private static readonly TimeSpan AlarmRepeat = TimeSpan.FromMilliseconds(200);
+
     private readonly Lock _gate = new();
     private V8ScriptEngine? _engine;
     private bool _disposed;
@@ -76,7 +79,7 @@ internal sealed class ScriptedToolkit(TimeSpan timeLimit) : IDisposable
             },
             state: null,
             timeLimit,
-            Timeout.InfiniteTimeSpan);
+            AlarmRepeat);
         try
         {
             return (string)engine.Invoke(function, arguments);
