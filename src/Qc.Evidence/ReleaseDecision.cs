@@ -83,7 +83,7 @@ public sealed class ReleaseDecision
         }
 
         ImmutableArray<string> found = obstacles.ToImmutable();
-        return new ReleaseDecision(found, found.IsEmpty ? new ReleaseToken(facts.LotId, facts.ReportSha256) : null);
+        return new ReleaseDecision(found, found.IsEmpty ? new ReleaseToken(facts.LotId, facts.ReportSha256, facts.Reviews.IsEmpty) : null);
 
         void Require(bool met, string obstacle)
         {

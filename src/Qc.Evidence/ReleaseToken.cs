@@ -8,14 +8,18 @@ public sealed class ReleaseToken
 {
     private int used;
 
-    internal ReleaseToken(string lotId, string reportSha256)
+    internal ReleaseToken(string lotId, string reportSha256, bool byException)
     {
+        ByException = byException;
         LotId = lotId;
         ReportSha256 = reportSha256;
     }
 
     /// <summary>The lot it is for.</summary>
     public string LotId { get; }
+
+    /// <summary>True where the lot goes without a reviewer, as its approved specification allows.</summary>
+    public bool ByException { get; }
 
     /// <summary>SHA-256 of the canonical report the decision rests on, lower-case hex.</summary>
     public string ReportSha256 { get; }
