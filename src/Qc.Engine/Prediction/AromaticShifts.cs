@@ -37,6 +37,7 @@ internal static class AromaticShifts
         var sum = new ShiftSum(parent);
         foreach (ImmutableArray<int> ring in rings)
         {
+            sum.AddUncertainty(IsPushPull(molecule, ring) ? UncertaintyModel.PushPullPpm : 0);
             if (!AddSubstituents(molecule, carbon, ring, isBenzene, sum))
             {
                 return ShiftEstimate.NotCovered(CentreOfClassPpm, UncertaintyModel.UnsaturatedClassPpm);
@@ -114,6 +115,16 @@ internal static class AromaticShifts
             }
         }
     }
+
+    private static bool IsPushPull(PerceivedMolecule molecule, ImmutableArray<int> ring)
+    {
+        ImmutableArray<(int Root, Substituent Substituent)> substituents =
+            [.. ring.SelectMany(atom => Exocyclic(molecule, atom).Select(root => (root, molecule.SubstituentAt(atom, root))))];
+        return substituents.Any(entry => entry.Substituent.Is("NR2"))
+            && substituents.Count(entry => IsDonor(entry.Substituent) || IsAcceptor(molecule, entry.Root)) > 1;
+    }
+
+    private static bool IsDonor(Substituent substituent) => substituent.Is("NR2") || substituent.Is("OH") || substituent.Is("OR");
 
     private static bool IsFusedAromatic(PerceivedMolecule molecule, int atom) =>
         molecule.RingsOf(atom).Count(ring => molecule.Ring(ring).All(member => molecule[member].IsAromatic)) > 1;

@@ -36,6 +36,9 @@ internal static class UncertaintyModel
     /// <summary>A pair of ortho substituents on a benzene ring.</summary>
     public const double OrthoPairPpm = 0.07;
 
+    /// <summary>An amine on a benzene ring with another strong donor or acceptor: their effects do not add.</summary>
+    public const double PushPullPpm = 0.10;
+
     /// <summary>A benzene increment used on another aromatic ring.</summary>
     public const double OtherRingPpm = 0.14;
 
