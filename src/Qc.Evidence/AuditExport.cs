@@ -1,3 +1,4 @@
+using System.Globalization;
 using System.Security.Cryptography;
 using System.Text;
 using System.Text.Json;
@@ -92,7 +93,7 @@ public static class AuditExport
         }
 
         return frontier.Root().AsSpan().SequenceEqual(head.Root)
-            ? new Verification(true, $"All {head.Size} entries are as signed by {head.Origin} at {head.At:yyyy-MM-dd HH:mm:ss} UTC.")
+            ? new Verification(true, string.Create(CultureInfo.InvariantCulture, $"All {head.Size} entries are as signed by {head.Origin} at {head.At:yyyy-MM-dd HH:mm:ss} UTC."))
             : new Verification(false, "The entries do not have the signed root: one was changed together with its leaf hash; which, the file cannot tell.");
     }
 }

@@ -1,3 +1,4 @@
+using System.Globalization;
 using System.Security.Cryptography;
 using System.Text;
 using System.Text.Json;
@@ -70,7 +71,7 @@ public static class LogProof
 
         byte[] leaf = MerkleTree.LeafHash(CanonicalJson.Of(entry));
         return MerkleTree.VerifyInclusion(index, head!.Size, leaf, path, head.Root)
-            ? new Verification(true, $"Entry {index} is in the log of {head.Size} entries signed by {head.Origin} at {head.At:yyyy-MM-dd HH:mm:ss} UTC.")
+            ? new Verification(true, string.Create(CultureInfo.InvariantCulture, $"Entry {index} is in the log of {head.Size} entries signed by {head.Origin} at {head.At:yyyy-MM-dd HH:mm:ss} UTC."))
             : new Verification(false, $"Entry {index} is not in the signed log, or the path is not its own.");
     }
 

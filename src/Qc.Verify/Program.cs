@@ -1,1 +1,1 @@
-return 0;
+return Qc.Verify.CommandLine.Run(args, Console.Out, Console.Error);
