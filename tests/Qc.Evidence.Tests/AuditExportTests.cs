@@ -67,6 +67,17 @@ public sealed class AuditExportTests : IDisposable
     }
 
     [Fact]
+    public void An_entry_changed_together_with_its_leaf_hash_does_not_have_the_signed_root()
+    {
+        (string[] entries, MerkleTree.NodeReader read) = Log(5);
+        TreeHead head = Head(5, read);
+        entries[3] = entries[3].Replace("lot-3", "lot-8", StringComparison.Ordinal);
+        Verification result = AuditExport.Verify(AuditExport.Write(entries, head.Text, head.Sign(key)), key);
+        Assert.False(result.IsValid);
+        Assert.Contains("signed root", result.Message, StringComparison.Ordinal);
+    }
+
+    [Fact]
     public void A_log_that_lost_its_last_entry_is_refused()
     {
         (string[] entries, MerkleTree.NodeReader read) = Log(5);
