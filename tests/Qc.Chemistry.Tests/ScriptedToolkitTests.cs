@@ -16,6 +16,24 @@ public sealed class ScriptedToolkitTests
     }
 
     [Fact]
+    public async Task The_time_limit_holds_while_the_thread_pool_is_full()
+    {
+        using var toolkit = new ScriptedToolkit(TimeSpan.FromSeconds(1));
+        using var release = new ManualResetEventSlim();
+        ThreadPool.GetMinThreads(out int workers, out _);
+        Task[] blocked = [.. Enumerable.Range(0, 20 * workers).Select(_ => Task.Run(release.Wait))];
+        Exception? seen = null;
+        var caller = new Thread(() => seen = Record.Exception(() => toolkit.Call("eval", "while (true) { }")));
+        caller.Start();
+
+        bool ended = caller.Join(TimeSpan.FromSeconds(30));
+        release.Set();
+        await Task.WhenAll(blocked);
+        Assert.True(ended);
+        Assert.IsType<ToolkitFailedException>(seen);
+    }
+
+    [Fact]
     public void A_crash_is_told_and_the_next_call_finds_a_fresh_toolkit()
     {
         using var toolkit = new ScriptedToolkit(TimeSpan.FromSeconds(5));

@@ -1,4 +1,3 @@
-using System.Diagnostics;
 using Microsoft.ClearScript;
 using Microsoft.ClearScript.JavaScript;
 using Microsoft.ClearScript.V8;
@@ -15,13 +14,8 @@ internal sealed class ToolkitFailedException(string message, Exception? inner) :
 /// </summary>
 internal sealed class ScriptedToolkit(TimeSpan timeLimit) : IDisposable
 {
-    private static readonly TimeSpan StartLimit = TimeSpan.FromSeconds(60);
-    private static readonly TimeSpan StartPoll = TimeSpan.FromMilliseconds(5);
-
-    // An interrupt that comes just before the script starts is lost; the next one is not.
-    private static readonly TimeSpan AlarmRepeat = TimeSpan.FromMilliseconds(200);
-
     private readonly Lock _gate = new();
+    private readonly Watchdog _watchdog = new(timeLimit);
     private V8ScriptEngine? _engine;
     private bool _disposed;
 
@@ -37,7 +31,8 @@ internal sealed class ScriptedToolkit(TimeSpan timeLimit) : IDisposable
             _engine ??= Start();
             try
             {
-                return ToolkitReply.Parse(CallWithinLimit(_engine, function, arguments));
+                V8ScriptEngine engine = _engine;
+                return ToolkitReply.Parse(_watchdog.Guard(() => (string)engine.Invoke(function, arguments), engine.Interrupt));
             }
             catch (Exception failure) when (failure is IScriptEngineException)
             {
@@ -57,40 +52,9 @@ internal sealed class ScriptedToolkit(TimeSpan timeLimit) : IDisposable
         lock (_gate)
         {
             _disposed = true;
+            _watchdog.Dispose();
             _engine?.Dispose();
             _engine = null;
-        }
-    }
-
-    private string CallWithinLimit(V8ScriptEngine engine, string function, object[] arguments)
-    {
-        var watch = new Lock();
-        bool running = true;
-        using var alarm = new Timer(
-            _ =>
-            {
-                lock (watch)
-                {
-                    if (running)
-                    {
-                        engine.Interrupt();
-                    }
-                }
-            },
-            state: null,
-            timeLimit,
-            AlarmRepeat);
-        try
-        {
-            return (string)engine.Invoke(function, arguments);
-        }
-        finally
-        {
-            // After this the alarm can no longer hit the next call.
-            lock (watch)
-            {
-                running = false;
-            }
         }
     }
 
@@ -106,34 +70,13 @@ internal sealed class ScriptedToolkit(TimeSpan timeLimit) : IDisposable
             var bytes = (ITypedArray<byte>)engine.Invoke("eval", $"new Uint8Array({module.Length})");
             bytes.WriteBytes(module, 0, (ulong)module.Length, 0);
             engine.Invoke("qcStart", bytes);
-            AwaitStart(engine);
-            return engine;
+            string state = (string)engine.Invoke("qcState");
+            return state == "ready" ? engine : throw new InvalidOperationException($"The structure toolkit does not start: {state}");
         }
         catch
         {
             engine.Dispose();
             throw;
-        }
-    }
-
-    // The module compiles on V8's own threads; its promise moves on only while the engine runs something.
-    private static void AwaitStart(V8ScriptEngine engine)
-    {
-        var watch = Stopwatch.StartNew();
-        while (true)
-        {
-            string state = (string)engine.Invoke("qcState");
-            if (state == "ready")
-            {
-                return;
-            }
-
-            if (state.Length > 0 || watch.Elapsed > StartLimit)
-            {
-                throw new InvalidOperationException($"The structure toolkit does not start: {(state.Length > 0 ? state : "no answer")}");
-            }
-
-            Thread.Sleep(StartPoll);
         }
     }
 
