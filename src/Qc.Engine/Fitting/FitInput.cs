@@ -1,0 +1,24 @@
+using System.Collections.Immutable;
+using Qc.Engine.Prediction;
+using Qc.Engine.Processing;
+
+namespace Qc.Engine.Fitting;
+
+/// <summary>What a fit starts from.</summary>
+public sealed record FitInput
+{
+    /// <summary>The spectrum.</summary>
+    public required Spectrum Spectrum { get; init; }
+
+    /// <summary>The expected substance.</summary>
+    public required Expectation Product { get; init; }
+
+    /// <summary>The internal standard, where one was weighed in.</summary>
+    public Expectation? InternalStandard { get; init; }
+
+    /// <summary>Its name.</summary>
+    public string InternalStandardName { get; init; } = "";
+
+    /// <summary>Residual solvent, water, reference and common impurities in the solvent of the spectrum.</summary>
+    public ImmutableArray<KnownSubstance> Known { get; init; } = [];
+}
