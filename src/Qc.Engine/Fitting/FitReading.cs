@@ -346,7 +346,7 @@ internal sealed class FitReading
             var shape = new LineShape(Math.Exp(_state.Parameters[_lines.WidthParameter[l]]), share);
             double height = area * 2 / (Math.PI * shape.WidthHertz);
             double reach = Math.Clamp(
-                0.5 * shape.WidthHertz * Math.Sqrt(height / (0.05 * spectrum.NoiseStandardDeviation)),
+                0.5 * shape.WidthHertz * Math.Sqrt(height / (0.004 * spectrum.NoiseStandardDeviation)),
                 6 * shape.WidthHertz,
                 TailInWidths * shape.WidthHertz);
             double centre = spectrum.IndexOf(_lines.Hertz[l] / spectrum.FrequencyMHz);

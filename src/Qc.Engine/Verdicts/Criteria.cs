@@ -104,4 +104,10 @@ public sealed record AssayCriteria
 
     /// <summary>Guard band as a multiple of the expanded uncertainty (JCGM 106); 0 is simple acceptance.</summary>
     public double GuardBandMultiple { get; init; }
+
+    /// <summary>
+    /// Shortest time between scans that counts as full relaxation, in seconds: five times an assumed T1 of 6 s
+    /// (common practice; T1 of maleic acid in D2O is 6 to 7 s by BIPM ISRD-01).
+    /// </summary>
+    public double RepetitionTimeSeconds { get; init; } = 30;
 }

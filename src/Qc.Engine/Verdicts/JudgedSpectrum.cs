@@ -22,6 +22,9 @@ internal sealed record JudgedSpectrum
 
     public Spectrum Spectrum => Processing.Spectrum;
 
+    /// <summary>Relaxation delay plus acquisition time in seconds, where the file states both.</summary>
+    public double? RepetitionTimeSeconds => Processing.RelaxationDelaySeconds + Processing.AcquisitionTimeSeconds;
+
     /// <summary>Protons of the product that the window shows and that do not exchange.</summary>
     public double ExpectedProtons => Expectation.Protons.Groups
         .Where(g => IsAsserted(g))

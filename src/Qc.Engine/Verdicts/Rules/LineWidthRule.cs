@@ -1,0 +1,28 @@
+namespace Qc.Engine.Verdicts.Rules;
+
+/// <summary>suitability.lineWidth: the fitted width at half height of the sharp lines; a wide one means a poor shim.</summary>
+internal static class LineWidthRule
+{
+    public const string Id = "suitability.lineWidth";
+    private const double LowFieldMHz = 300;
+
+    public static IEnumerable<Finding> Judge(JudgedSpectrum judged)
+    {
+        // A 300 MHz instrument has its protons a little below 300.
+        bool lowField = judged.Spectrum.FrequencyMHz < LowFieldMHz - 5;
+        double limit = lowField ? judged.Criteria.Suitability.LineWidthLowFieldHertz : judged.Criteria.Suitability.LineWidthHertz;
+        double width = judged.Fit.WidthHertz;
+        bool passes = width <= limit;
+        yield return new Finding(
+            Id,
+            judged.Name,
+            $"Lines are {Say.Coarse(width)} Hz wide at half height; at most {Say.Tenth(limit)} Hz is allowed"
+            + (passes ? "." : ": shim and measure again."),
+            passes ? Outcome.Pass : Outcome.Flag,
+            width,
+            null,
+            null,
+            limit,
+            "Hz");
+    }
+}
