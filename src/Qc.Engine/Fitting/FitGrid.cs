@@ -12,6 +12,13 @@ internal sealed class FitGrid
     /// <summary>Points per block; supports of columns are kept block by block.</summary>
     public const int BlockSize = 64;
 
+    /// <summary>How fast the envelope of the local signal falls, at least.</summary>
+    private const double EnvelopeHertz = 5;
+
+    /// <summary>The foot of a line (shim, truncation, phase) reaches further, with a small share of its height.</summary>
+    private const double FootHertz = 60;
+    private const double FootShare = 0.05;
+
     private FitGrid(double[] hertz, double[] intensity, double[] weight)
     {
         Hertz = hertz;
@@ -36,7 +43,8 @@ internal sealed class FitGrid
 
     /// <summary>
     /// Lays the grid. The variance of a point is noise² + (misfitShare × local signal)², because an imperfect shim must
-    /// not be taken for another substance.
+    /// not be taken for another substance. The local signal is the envelope of the neighbouring intensities, falling off
+    /// exponentially over a few line widths: the foot of a strong line is known no better than its shape.
     /// </summary>
     /// <param name="spectrum">The spectrum, broadened already where the fit is coarse.</param>
     /// <param name="intensity">Intensities at the points of the spectrum.</param>
@@ -49,8 +57,9 @@ internal sealed class FitGrid
     {
         double hertzPerPoint = spectrum.HzPerPoint;
         int thinning = Math.Max(1, (int)(widthHertz / (5 * hertzPerPoint)));
-        int reach = Math.Max(1, (int)Math.Round(0.7 * widthHertz / hertzPerPoint));
         double correlation = Math.Max(1, spectrum.NoiseCorrelationPoints / thinning);
+        double[] near = Envelope(intensity, Math.Max(EnvelopeHertz, 2 * widthHertz) / hertzPerPoint);
+        double[] far = Envelope(intensity, Math.Max(FootHertz, 20 * widthHertz) / hertzPerPoint);
         var hertz = new List<double>();
         var values = new List<double>();
         var weights = new List<double>();
@@ -60,13 +69,7 @@ internal sealed class FitGrid
             int last = Math.Min(spectrum.Count - 1, (int)Math.Floor(spectrum.IndexOf(stretch.Low)));
             for (int i = first; i <= last; i += thinning)
             {
-                double local = 0;
-                for (int k = Math.Max(0, i - reach); k <= Math.Min(spectrum.Count - 1, i + reach); k++)
-                {
-                    local = Math.Max(local, Math.Abs(intensity[k]));
-                }
-
-                double misfit = misfitShare * local;
+                double misfit = misfitShare * Math.Max(near[i], FootShare * far[i]);
                 hertz.Add(spectrum.Ppm(i) * spectrum.FrequencyMHz);
                 values.Add(intensity[i]);
                 weights.Add(1 / Math.Sqrt(correlation * ((noise * noise) + (misfit * misfit))));
@@ -74,6 +77,28 @@ internal sealed class FitGrid
         }
 
         return new FitGrid([.. hertz], [.. values], [.. weights]);
+    }
+
+    /// <summary>Largest neighbouring magnitude, discounted by exp(−distance/fall).</summary>
+    private static double[] Envelope(double[] intensity, double fallPoints)
+    {
+        double keep = Math.Exp(-1 / fallPoints);
+        var envelope = new double[intensity.Length];
+        double running = 0;
+        for (int i = 0; i < intensity.Length; i++)
+        {
+            running = Math.Max(Math.Abs(intensity[i]), running * keep);
+            envelope[i] = running;
+        }
+
+        running = 0;
+        for (int i = intensity.Length - 1; i >= 0; i--)
+        {
+            running = Math.Max(Math.Abs(intensity[i]), running * keep);
+            envelope[i] = Math.Max(envelope[i], running);
+        }
+
+        return envelope;
     }
 
     /// <summary>Range of grid indices whose positions lie within a distance of a position; empty when none does.</summary>

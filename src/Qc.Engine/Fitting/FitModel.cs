@@ -82,7 +82,7 @@ internal sealed class FitModel
     {
         var model = new FitModel();
         double ln = Math.Log(widthHertz);
-        model.WidthParameter = model.Add(new FitParameter("ln width", ln, ln, 0.7, ln - 2, ln + 2, 0.4));
+        model.WidthParameter = model.Add(new FitParameter("ln width", ln, ln, 0.3, ln - 0.8, ln + 0.8, 0.2));
         model.ShareParameter = model.Add(new FitParameter("Gaussian share", gaussianShare, 0.2, 0.3, 0, 0.9, 0.15));
         return model;
     }

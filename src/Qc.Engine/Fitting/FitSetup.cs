@@ -22,6 +22,9 @@ internal sealed class FitSetup
 
     public FitModel Model { get; }
 
+    /// <summary>Whether a parameter is the place of a group or of a known signal.</summary>
+    public bool IsPlace(int parameter) => Model.Parameters[parameter].Name.StartsWith("shift", StringComparison.Ordinal);
+
     public SubstanceColumns Product { get; }
 
     public SubstanceColumns? InternalStandard { get; }

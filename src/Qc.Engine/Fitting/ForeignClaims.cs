@@ -11,6 +11,7 @@ internal sealed class ForeignClaims
     private readonly double[] _uncertainty;
     private readonly bool[] _optional;
     private readonly bool[] _wholly;
+    private int _water = -1;
 
     private ForeignClaims(int signals)
     {
@@ -25,6 +26,9 @@ internal sealed class ForeignClaims
 
     /// <summary>By group of the internal standard: its signal, -1 for none.</summary>
     public ImmutableArray<int> InternalStandardSignals { get; private set; } = [];
+
+    /// <summary>Whether a known substance draws part of a signal.</summary>
+    public bool IsDrawn(int signal) => _area[signal] > 0 || _wholly[signal] || _water == signal;
 
     /// <summary>Whether a signal belongs to something else altogether.</summary>
     public bool IsWholly(int signal) => _wholly[signal];
@@ -100,6 +104,7 @@ internal sealed class ForeignClaims
             if (alone)
             {
                 _optional[bestSignal] = true;
+                _water = bestSignal;
             }
 
             return alone ? best.Hertz / frequencyMHz : null;

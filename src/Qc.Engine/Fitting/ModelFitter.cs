@@ -44,13 +44,16 @@ internal sealed class ModelFitter
     private readonly double _noise;
     private readonly int _linearCount;
     private readonly int _tieCount;
+    private readonly bool[] _moves;
 
     /// <param name="model">What to fit.</param>
     /// <param name="grid">What to fit it to.</param>
     /// <param name="broadeningHertz">Lorentzian broadening already applied to the data.</param>
     /// <param name="noise">Standard deviation of the noise, to decide how far the tail of a line is drawn.</param>
-    public ModelFitter(FitModel model, FitGrid grid, double broadeningHertz, double noise)
+    /// <param name="moves">Which parameters may move, by index.</param>
+    public ModelFitter(FitModel model, FitGrid grid, double broadeningHertz, double noise, Func<int, bool> moves)
     {
+        _moves = [.. Enumerable.Range(0, model.Parameters.Count).Select(moves)];
         _model = model;
         _grid = grid;
         _broadeningHertz = broadeningHertz;
@@ -365,6 +368,17 @@ internal sealed class ModelFitter
             double weight = 1 / (parameter.PriorStandardUncertainty * parameter.PriorStandardUncertainty);
             normal[i, i] += weight;
             gradient[i] -= weight * (parameters[i] - parameter.PriorMean);
+        }
+
+        for (int i = 0; i < p; i++)
+        {
+            if (!_moves[i])
+            {
+                normal.ClearRow(i);
+                normal.ClearColumn(i);
+                normal[i, i] = 1;
+                gradient[i] = 0;
+            }
         }
 
         AddTies(normal, linear, p);

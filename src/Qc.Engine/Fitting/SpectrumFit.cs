@@ -14,8 +14,13 @@ public static class SpectrumFit
 {
     private const int Starts = 3;
     private const double NormalGapHertz = 22;
-    private static readonly double[] CoarseBroadeningsHertz = [15, 5];
-    private static readonly double[] FineBroadeningsHertz = [1.5, 0];
+    private const int StrongMaxima = 16;
+
+    /// <summary>Stages by which the best start is chosen: only places and amounts move.</summary>
+    private static readonly FitStage[] CoarseStages = [new(15, 0.10, 8, true), new(6, 0.10, 8, true)];
+
+    /// <summary>Stages that refine it: couplings and line shape move too.</summary>
+    private static readonly FitStage[] FineStages = [new(3, 0.08, 10, false), new(1.2, 0.05, 10, false), new(0, FineMisfitShare, 12, false)];
 
     /// <summary>Runs the fit. Deterministic.</summary>
     public static FitResult Run(FitInput input, CancellationToken cancellation = default)
@@ -25,9 +30,9 @@ public static class SpectrumFit
         double width = TypicalWidth(signals);
         var claims = ForeignClaims.Of(input, signals);
         ImmutableArray<StartingPlaces> starts = StartingPlaces.Candidates(input, signals, claims, Starts);
-        ImmutableArray<Interval> stretches = Stretches(input, signals, starts, width);
+        ImmutableArray<Interval> stretches = Stretches(input, signals, claims, starts, width);
         Dictionary<double, double[]> broadened =
-            CoarseBroadeningsHertz.Concat(FineBroadeningsHertz).ToDictionary(b => b, b => Broadening.Apply(spectrum, b));
+            CoarseStages.Concat(FineStages).ToDictionary(s => s.BroadeningHertz, s => Broadening.Apply(spectrum, s.BroadeningHertz));
 
         FitSetup? bestSetup = null;
         FitState? bestState = null;
@@ -36,9 +41,9 @@ public static class SpectrumFit
         {
             FitSetup setup = FitSetup.Build(input, signals, claims, start, width);
             FitState? state = null;
-            foreach (double broadening in CoarseBroadeningsHertz)
+            foreach (FitStage stage in CoarseStages)
             {
-                state = Stage(input, setup, stretches, broadened[broadening], broadening, width, state, 0.10, 8, cancellation);
+                state = Run(input, setup, stretches, broadened, stage, width, state, cancellation);
             }
 
             double cost = state!.Cost + (AbsentGroups(start) * AbsentGroupCost);
@@ -48,9 +53,9 @@ public static class SpectrumFit
             }
         }
 
-        foreach (double broadening in FineBroadeningsHertz)
+        foreach (FitStage stage in FineStages)
         {
-            bestState = Stage(input, bestSetup!, stretches, broadened[broadening], broadening, width, bestState, FineMisfitShare, 14, cancellation);
+            bestState = Run(input, bestSetup!, stretches, broadened, stage, width, bestState, cancellation);
         }
 
         var reading = new FitReading(input, signals, bestSetup!, bestState!, width);
@@ -63,7 +68,7 @@ public static class SpectrumFit
         }
 
         FitGrid grid = FitGrid.Lay(spectrum, spectrum.Intensity, stretches, width, spectrum.NoiseStandardDeviation, FineMisfitShare);
-        new ModelFitter(bestSetup!.Model, grid, 0, spectrum.NoiseStandardDeviation).AddUncertainties(bestState!);
+        new ModelFitter(bestSetup!.Model, grid, 0, spectrum.NoiseStandardDeviation, _ => true).AddUncertainties(bestState!);
         return new FitReading(input, signals, bestSetup, bestState!, width).ToResult();
     }
 
@@ -76,23 +81,22 @@ public static class SpectrumFit
     private static int AbsentGroups(StartingPlaces start) =>
         Enumerable.Range(0, start.Placed.Length).Count(g => start.Measured[g] && !start.Placed[g]);
 
-    private static FitState Stage(
+    private static FitState Run(
         FitInput input,
         FitSetup setup,
         ImmutableArray<Interval> stretches,
-        double[] intensity,
-        double broadening,
+        Dictionary<double, double[]> broadened,
+        FitStage stage,
         double width,
         FitState? previous,
-        double misfitShare,
-        int iterations,
         CancellationToken cancellation)
     {
-        double noise = Broadening.Noise(input.Spectrum, broadening);
-        FitGrid grid = FitGrid.Lay(input.Spectrum, intensity, stretches, width + broadening, noise, misfitShare);
-        var fitter = new ModelFitter(setup.Model, grid, broadening, noise);
+        double noise = Broadening.Noise(input.Spectrum, stage.BroadeningHertz);
+        FitGrid grid = FitGrid.Lay(
+            input.Spectrum, broadened[stage.BroadeningHertz], stretches, width + stage.BroadeningHertz, noise, stage.MisfitShare);
+        var fitter = new ModelFitter(setup.Model, grid, stage.BroadeningHertz, noise, stage.OnlyPlaces ? setup.IsPlace : _ => true);
         double[] start = previous?.Parameters ?? [.. setup.Model.Parameters.Select(p => p.Start)];
-        return fitter.Fit(start, previous?.Amplitudes, iterations, cancellation);
+        return fitter.Fit(start, previous?.Amplitudes, stage.Iterations, cancellation);
     }
 
     private static FitState Refit(
@@ -106,7 +110,7 @@ public static class SpectrumFit
     {
         FitGrid grid = FitGrid.Lay(
             input.Spectrum, broadened[0], stretches, width, input.Spectrum.NoiseStandardDeviation, FineMisfitShare);
-        return new ModelFitter(setup.Model, grid, 0, input.Spectrum.NoiseStandardDeviation).Fit(parameters, null, 8, cancellation);
+        return new ModelFitter(setup.Model, grid, 0, input.Spectrum.NoiseStandardDeviation, _ => true).Fit(parameters, null, 8, cancellation);
     }
 
     /// <summary>Lines of one multiplet are no further apart than its largest coupling.</summary>
@@ -119,37 +123,42 @@ public static class SpectrumFit
         return Math.Max(NormalGapHertz, 1.2 * largest);
     }
 
-    /// <summary>Lower quartile of the widths of the maxima that stand clear: overlap only ever widens.</summary>
-    private static double TypicalWidth(ImmutableArray<MeasuredSignal> signals)
+    /// <summary>
+    /// Lower quartile of the widths of the strongest maxima that stand clear: overlap only ever widens, and the wiggles
+    /// beside strong lines are no lines.
+    /// </summary>
+    internal static double TypicalWidth(ImmutableArray<MeasuredSignal> signals)
     {
         double[] widths =
         [
             .. signals.SelectMany(s => s.Maxima)
-                .Where(m => m.Prominence > 0.6 * m.Height && m.WidthHertz > 0)
+                .Where(m => m.Prominence > 0.5 * m.Height && m.WidthHertz > 0)
+                .OrderByDescending(m => m.Prominence)
+                .Take(StrongMaxima)
                 .Select(m => m.WidthHertz)
                 .Order(),
         ];
-        return widths.Length == 0 ? 1 : Math.Clamp(widths[widths.Length / 4], 0.2, 6);
+        return widths.Length == 0 ? 1 : Math.Clamp(widths[widths.Length / 4], 0.2, 10);
     }
 
-    /// <summary>All signals, and the places where a group is expected but has none; merged.</summary>
+    /// <summary>
+    /// The signals that some component of the model draws in some start, with a margin; merged. Signals that nothing in the
+    /// model draws would only pull at the feet of the lines that are drawn.
+    /// </summary>
     private static ImmutableArray<Interval> Stretches(
-        FitInput input, ImmutableArray<MeasuredSignal> signals, ImmutableArray<StartingPlaces> starts, double width)
+        FitInput input,
+        ImmutableArray<MeasuredSignal> signals,
+        ForeignClaims claims,
+        ImmutableArray<StartingPlaces> starts,
+        double width)
     {
-        double margin = Math.Max(12 * width, 8) / input.Spectrum.FrequencyMHz;
-        var raw = signals.Select(s => new Interval(s.Ppm.Low - margin, s.Ppm.High + margin)).ToList();
-        foreach (StartingPlaces start in starts)
-        {
-            for (int g = 0; g < start.StartPpm.Length; g++)
-            {
-                if (start.Placed[g])
-                {
-                    double reach = (2 * StartingPlaces.RmsHertz(input.Product, g) / input.Spectrum.FrequencyMHz) + margin;
-                    raw.Add(new Interval(start.StartPpm[g] - reach, start.StartPpm[g] + reach));
-                }
-            }
-        }
-
+        double margin = Math.Max(4 * width, 3) / input.Spectrum.FrequencyMHz;
+        IEnumerable<int> drawn = starts.SelectMany(s => s.SignalOf)
+            .Concat(claims.InternalStandardSignals)
+            .Concat(Enumerable.Range(0, signals.Length).Where(claims.IsDrawn))
+            .Where(s => s >= 0)
+            .Distinct();
+        Interval[] raw = [.. drawn.Select(s => new Interval(signals[s].Ppm.Low - margin, signals[s].Ppm.High + margin))];
         var merged = new List<Interval>();
         foreach (Interval interval in raw.OrderBy(i => i.Low))
         {
@@ -166,3 +175,10 @@ public static class SpectrumFit
         return [.. merged];
     }
 }
+
+/// <summary>One stage of the fit, at data broadened so that multiplets are smooth.</summary>
+/// <param name="BroadeningHertz">Lorentzian broadening of the data.</param>
+/// <param name="MisfitShare">Share of the local signal that shape faults may amount to.</param>
+/// <param name="Iterations">Most iterations.</param>
+/// <param name="OnlyPlaces">Whether only shifts and amounts move.</param>
+internal sealed record FitStage(double BroadeningHertz, double MisfitShare, int Iterations, bool OnlyPlaces);
