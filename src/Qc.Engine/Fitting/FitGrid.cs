@@ -17,7 +17,7 @@ internal sealed class FitGrid
 
     /// <summary>The foot of a line (shim, truncation, phase) reaches further, with a small share of its height.</summary>
     private const double FootHertz = 60;
-    private const double FootShare = 0.05;
+    private const double FootShare = 0.15;
 
     private FitGrid(double[] hertz, double[] intensity, double[] weight)
     {
@@ -58,7 +58,7 @@ internal sealed class FitGrid
         double hertzPerPoint = spectrum.HzPerPoint;
         int thinning = Math.Max(1, (int)(widthHertz / (5 * hertzPerPoint)));
         double correlation = Math.Max(1, spectrum.NoiseCorrelationPoints / thinning);
-        double[] near = Envelope(intensity, Math.Max(EnvelopeHertz, 2 * widthHertz) / hertzPerPoint);
+        double[] near = Envelope(intensity, Math.Max(EnvelopeHertz, 5 * widthHertz) / hertzPerPoint);
         double[] far = Envelope(intensity, Math.Max(FootHertz, 20 * widthHertz) / hertzPerPoint);
         var hertz = new List<double>();
         var values = new List<double>();
@@ -80,7 +80,7 @@ internal sealed class FitGrid
     }
 
     /// <summary>Largest neighbouring magnitude, discounted by exp(−distance/fall).</summary>
-    private static double[] Envelope(double[] intensity, double fallPoints)
+    internal static double[] Envelope(double[] intensity, double fallPoints)
     {
         double keep = Math.Exp(-1 / fallPoints);
         var envelope = new double[intensity.Length];

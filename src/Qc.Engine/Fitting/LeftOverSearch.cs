@@ -15,6 +15,10 @@ internal static class LeftOverSearch
     private const double ShapeShare = 0.08;
     private const double MergeHertz = 12;
 
+    /// <summary>The foot of a strong line reaches this far, with this share of its height.</summary>
+    private const double FootHertz = 60;
+    private const double FootShare = 0.004;
+
     /// <summary>Regions with net positive area, largest first.</summary>
     public static ImmutableArray<LeftOverRegion> Find(Spectrum spectrum, double[] modelled, double widthHertz)
     {
@@ -29,10 +33,11 @@ internal static class LeftOverSearch
         double[] beside = Mean(modelled, 3 * reach);
         int window = (2 * reach) + 1;
         double noise = spectrum.NoiseStandardDeviation * Math.Sqrt(Math.Min(1, spectrum.NoiseCorrelationPoints / window));
+        double[] foot = FitGrid.Envelope(modelled, FootHertz / spectrum.HzPerPoint);
         var marked = new bool[residual.Length];
         for (int i = 0; i < marked.Length; i++)
         {
-            marked[i] = seen[i] > (NoiseFactor * noise) + (ShapeShare * Math.Abs(beside[i]));
+            marked[i] = seen[i] > (NoiseFactor * noise) + (ShapeShare * Math.Abs(beside[i])) + (FootShare * foot[i]);
         }
 
         return [.. Gather(spectrum, residual, marked, reach).OrderByDescending(r => r.Area)];
