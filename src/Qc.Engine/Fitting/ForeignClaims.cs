@@ -1,4 +1,5 @@
 using System.Collections.Immutable;
+using Qc.Engine.Processing;
 using Qc.Engine.Prediction;
 using Qc.Engine.Structures;
 

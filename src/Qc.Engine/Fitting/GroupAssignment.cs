@@ -1,4 +1,5 @@
 using System.Collections.Immutable;
+using Qc.Engine.Processing;
 
 namespace Qc.Engine.Fitting;
 

@@ -37,7 +37,11 @@ public sealed record Finding(
     double? Low = null,
     double? High = null,
     string Unit = "",
-    ImmutableArray<Interval> RegionsPpm = default);
+    ImmutableArray<Interval> RegionsPpm = default)
+{
+    /// <summary>Where in the spectrum; empty where it concerns the whole.</summary>
+    public ImmutableArray<Interval> RegionsPpm { get; init; } = RegionsPpm.IsDefault ? [] : RegionsPpm;
+}
 
 /// <summary>One line of the proton ledger: a group expected, and what was found of it.</summary>
 public sealed record LedgerLine

@@ -89,6 +89,9 @@ public sealed record SuitabilityCriteria
     /// <summary>Offset of the file's axis with a reference lot, at most, in ppm.</summary>
     public double AxisOffsetReferencePpm { get; init; } = 0.05;
 
+    /// <summary>Phase error left, at most, in degrees.</summary>
+    public double PhaseDegrees { get; init; } = 5;
+
     /// <summary>Digital resolution in line widths per point, at most.</summary>
     public double LineWidthsPerPoint { get; init; } = 0.5;
 }

@@ -2,6 +2,7 @@ using Qc.Engine.Fitting;
 using Qc.Engine.Prediction;
 using Qc.Engine.Processing;
 using Qc.Engine.Structures;
+using Qc.Engine.Values;
 
 namespace Qc.Engine.Verdicts;
 
@@ -21,6 +22,39 @@ internal sealed record JudgedSpectrum
     public Criteria Criteria => Request.Criteria;
 
     public Spectrum Spectrum => Processing.Spectrum;
+
+    /// <summary>
+    /// Common offset of the product's groups from their expected shifts, where the axis has no reference: the mean weighted
+    /// by 1/(u² + 0.05²). Null with fewer than two groups, or where it is not clear of its own uncertainty.
+    /// </summary>
+    public Uncertain? CommonOffsetPpm
+    {
+        get
+        {
+            if (Spectrum.AxisCorrectionPpm is not null)
+            {
+                return null;
+            }
+
+            double weights = 0;
+            double sum = 0;
+            int groups = 0;
+            foreach (ProtonGroup group in Expectation.Protons.Groups.Where(g => IsAsserted(g) && Fit.Groups[g.Index].Found))
+            {
+                ExpectedShift expected = Expectation.Shifts[group.Index];
+                double weight = 1 / ((expected.StandardUncertaintyPpm * expected.StandardUncertaintyPpm) + 0.0025);
+                weights += weight;
+                sum += weight * (Fit.Groups[group.Index].ShiftPpm - expected.ShiftPpm);
+                groups++;
+            }
+
+            return groups < 2 ? null : new Uncertain(sum / weights, Math.Sqrt(1 / weights));
+        }
+    }
+
+    /// <summary>What is taken off observed shifts before they are judged: the common offset, where it is clear (2 u) and below 0.3 ppm.</summary>
+    public double OffsetPpm =>
+        CommonOffsetPpm is { } offset && Math.Abs(offset.Value) > 2 * offset.StandardUncertainty && Math.Abs(offset.Value) < 0.3 ? offset.Value : 0;
 
     /// <summary>Relaxation delay plus acquisition time in seconds, where the file states both.</summary>
     public double? RepetitionTimeSeconds => Processing.RelaxationDelaySeconds + Processing.AcquisitionTimeSeconds;

@@ -1,5 +1,6 @@
 using System.Collections.Immutable;
 using Qc.Engine.Fitting;
+using Qc.Engine.Processing;
 using Qc.Engine.Values;
 using Xunit;
 

@@ -24,14 +24,15 @@ internal static class ShiftRule
             }
 
             double tolerance = judged.ShiftTolerancePpm(group.Index);
-            bool passes = Math.Abs(fit.ShiftPpm - expected.ShiftPpm) <= tolerance;
+            double observed = fit.ShiftPpm - judged.OffsetPpm;
+            bool passes = Math.Abs(observed - expected.ShiftPpm) <= tolerance;
             string verb = passes ? "lies" : "lies outside its limits";
             yield return new Finding(
                 Id,
                 group.Name,
-                $"{Say.Group(group)} {verb} at {Say.Ppm(fit.ShiftPpm)} ppm; expected {Say.Coarse(expected.ShiftPpm)} ± {Say.Coarse(tolerance)} ppm.",
+                $"{Say.Group(group)} {verb} at {Say.Ppm(observed)} ppm; expected {Say.Coarse(expected.ShiftPpm)} ± {Say.Coarse(tolerance)} ppm.",
                 passes ? Outcome.Pass : Outcome.Flag,
-                fit.ShiftPpm,
+                observed,
                 fit.ShiftStandardUncertaintyPpm,
                 expected.ShiftPpm - tolerance,
                 expected.ShiftPpm + tolerance,

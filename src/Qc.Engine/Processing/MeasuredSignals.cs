@@ -1,8 +1,7 @@
 using System.Collections.Immutable;
-using Qc.Engine.Processing;
 using Qc.Engine.Values;
 
-namespace Qc.Engine.Fitting;
+namespace Qc.Engine.Processing;
 
 /// <summary>A maximum of the spectrum that stands out of its surroundings.</summary>
 /// <param name="Hertz">Position from 0 ppm.</param>
