@@ -14,7 +14,7 @@ public class GroupAssignmentTests
         // Propyl acetate in CDCl3 (CHECKVALUES E01, from memory): 2:3:2:3 at 4.02, 2.05, 1.65, 0.94.
         AssignableGroup[] groups = [Group(0, 3, 2.0), Group(1, 2, 4.1), Group(2, 2, 1.6), Group(3, 3, 1.0)];
         AssignableSignal[] signals = [Signal(4.02, 20), Signal(2.05, 30), Signal(1.65, 20), Signal(0.94, 30)];
-        Assert.Equal([1, 0, 2, 3], GroupAssignment.Best(groups, signals, 1)[0].SignalOf);
+        Assert.Equal([1, 0, 2, 3], GroupAssignment.Best(groups, signals, 1)[0].SignalOf.ToArray());
     }
 
     [Fact]
@@ -22,7 +22,7 @@ public class GroupAssignmentTests
     {
         AssignableGroup[] groups = [Group(0, 3, 1.26), Group(1, 3, 1.14), Group(2, 2, 4.1)];
         AssignableSignal[] signals = [Signal(4.12, 20), Signal(1.20, 60, 0.15)];
-        Assert.Equal([1, 1, 0], GroupAssignment.Best(groups, signals, 1)[0].SignalOf);
+        Assert.Equal([1, 1, 0], GroupAssignment.Best(groups, signals, 1)[0].SignalOf.ToArray());
     }
 
     [Fact]
@@ -30,7 +30,7 @@ public class GroupAssignmentTests
     {
         AssignableGroup[] groups = [Group(0, 2, 4.1), Group(1, 3, 2.0), Group(2, 6, 1.0)];
         AssignableSignal[] signals = [Signal(4.10, 0.6), Signal(3.95, 20), Signal(2.05, 30), Signal(0.94, 60)];
-        Assert.Equal([1, 2, 3], GroupAssignment.Best(groups, signals, 1)[0].SignalOf);
+        Assert.Equal([1, 2, 3], GroupAssignment.Best(groups, signals, 1)[0].SignalOf.ToArray());
     }
 
     [Fact]
@@ -38,7 +38,7 @@ public class GroupAssignmentTests
     {
         AssignableGroup[] groups = [Group(0, 1, 8.1), Group(1, 3, 2.0)];
         AssignableSignal[] signals = [Signal(2.05, 30)];
-        Assert.Equal([-1, 0], GroupAssignment.Best(groups, signals, 1)[0].SignalOf);
+        Assert.Equal([-1, 0], GroupAssignment.Best(groups, signals, 1)[0].SignalOf.ToArray());
     }
 
     [Fact]
@@ -47,7 +47,7 @@ public class GroupAssignmentTests
         AssignableGroup[] groups = [Group(0, 2, 4.1), Group(1, 3, 1.3)];
         AssignableSignal[] signals = [Signal(4.12, 2), Signal(1.26, 3), Signal(0.0, 500) with { ForeignArea = 500, Optional = true }];
         Assignment best = GroupAssignment.Best(groups, signals, 1)[0];
-        Assert.Equal([0, 1], best.SignalOf);
+        Assert.Equal([0, 1], best.SignalOf.ToArray());
         Assert.Equal(1, best.AreaPerProton, 0.1);
     }
 
