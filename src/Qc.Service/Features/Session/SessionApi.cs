@@ -1,0 +1,72 @@
+using Microsoft.AspNetCore.Identity;
+using Qc.Records.People;
+using Qc.Service.Http;
+
+namespace Qc.Service.Features.Session;
+
+/// <summary>Body of POST /api/v1/session.</summary>
+public sealed record SessionRequest
+{
+    /// <summary>User name.</summary>
+    public required string User { get; init; }
+
+    /// <summary>Password.</summary>
+    public required string Password { get; init; }
+
+    /// <summary>One-time code, where the account has a second factor.</summary>
+    public string? Code { get; init; }
+}
+
+/// <summary>Who is signed in.</summary>
+public sealed record SessionDto(string User, string PrintedName, IReadOnlyList<string> Roles);
+
+/// <summary>Signing in and out.</summary>
+internal static class SessionApi
+{
+    public static void MapSession(this IEndpointRouteBuilder api)
+    {
+        RouteGroupBuilder group = api.MapGroup("/session").WithTags("Session");
+        group.MapPost("/", SignInAsync).AllowAnonymous().Accepts<SessionRequest>("application/json").Produces<SessionDto>()
+            .WithProblems(400, 401, 415, 422).WithSummary("Signs a person in (cookie)");
+        group.MapGet("/", WhoAsync).RequireAuthorization().Produces<SessionDto>().WithProblems(401).WithSummary("Who is signed in");
+        group.MapDelete("/", SignOutAsync).AllowAnonymous().Produces(204).WithSummary("Signs out");
+    }
+
+    private static async Task<IResult> SignInAsync(
+        HttpRequest request, SignInManager<Person> signIn, UserManager<Person> people, ILogger<SessionRequest> logger, CancellationToken cancellation)
+    {
+        Outcome<SessionRequest> body = await JsonBody.ReadAsync<SessionRequest>(request, cancellation);
+        if (body.Problem is { } problem)
+        {
+            return problem.ToResult();
+        }
+
+        SessionRequest session = body.Value!;
+        Person? person = await people.FindByNameAsync(session.User);
+        SignInResult result = person is { IsActive: true }
+            ? await signIn.PasswordSignInAsync(person, session.Password, isPersistent: false, lockoutOnFailure: true)
+            : SignInResult.Failed;
+        if (!result.Succeeded)
+        {
+            // The same words for an unknown name, a wrong password and a locked account: they reveal nothing.
+            logger.LogWarning("Sign-in refused for {User}: {Result}", session.User, result.ToString());
+            return Problem.SignInNeeded("The user name or password is wrong, or the account is locked for a while after several wrong passwords.").ToResult();
+        }
+
+        return Results.Ok(new SessionDto(person!.UserName!, person.PrintedName, [.. await people.GetRolesAsync(person)]));
+    }
+
+    private static async Task<IResult> WhoAsync(HttpContext http, UserManager<Person> people)
+    {
+        Person? person = await people.GetUserAsync(http.User);
+        return person is null
+            ? Problem.SignInNeeded("A key is not a person.").ToResult()
+            : Results.Ok(new SessionDto(person.UserName!, person.PrintedName, [.. await people.GetRolesAsync(person)]));
+    }
+
+    private static async Task<IResult> SignOutAsync(SignInManager<Person> signIn)
+    {
+        await signIn.SignOutAsync();
+        return Results.NoContent();
+    }
+}

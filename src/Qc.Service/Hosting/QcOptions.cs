@@ -1,0 +1,40 @@
+namespace Qc.Service.Hosting;
+
+/// <summary>What the command line and the configuration say.</summary>
+public sealed record QcOptions
+{
+    /// <summary>Whether to load the demo plant.</summary>
+    public bool Demo { get; init; }
+
+    /// <summary>Folder for keys, logs and the private database.</summary>
+    public required string DataFolder { get; init; }
+
+    /// <summary>Connection of the database owner, for migrations; null to run the private server.</summary>
+    public string? OwnerConnection { get; init; }
+
+    /// <summary>Connection of the application.</summary>
+    public string? ApplicationConnection { get; init; }
+
+    /// <summary>RabbitMQ for several workers; null for one process.</summary>
+    public string? RabbitMq { get; init; }
+
+    /// <summary>Name of the site on tree heads and certificates.</summary>
+    public string Site { get; init; } = "Qc site";
+
+    /// <summary>Largest request body in bytes.</summary>
+    public long LargestBodyBytes { get; init; } = 100L * 1024 * 1024;
+
+    /// <summary>Reads them.</summary>
+    public static QcOptions From(IConfiguration configuration, string[] args, string contentRoot) => new()
+    {
+        Demo = args.Contains("--demo", StringComparer.Ordinal),
+        DataFolder = Path.GetFullPath(configuration["data"] ?? configuration["Qc:DataFolder"] ?? Path.Combine(contentRoot, ".qc")),
+        OwnerConnection = configuration.GetConnectionString("Owner") ?? FromFile(configuration["Qc:OwnerConnectionFile"]),
+        ApplicationConnection = configuration.GetConnectionString("Application") ?? FromFile(configuration["Qc:ApplicationConnectionFile"]),
+        RabbitMq = configuration["Qc:RabbitMq"],
+        Site = configuration["Qc:Site"] ?? "Qc site",
+    };
+
+    /// <summary>Secrets may come from files, as container platforms mount them.</summary>
+    private static string? FromFile(string? path) => path is null ? null : File.ReadAllText(path).Trim();
+}
