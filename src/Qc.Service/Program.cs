@@ -1,3 +1,3 @@
-var builder = WebApplication.CreateBuilder(args);
-var app = builder.Build();
-app.Run();
+using Qc.Service.Hosting;
+
+await QcHost.RunAsync(args);

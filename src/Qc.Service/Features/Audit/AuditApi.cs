@@ -84,7 +84,7 @@ internal static class AuditApi
             [.. MerkleTree.InclusionProof(index, upTo, read).Select(Convert.ToHexStringLower)]));
     }
 
-    private static async Task<IResult> ConsistencyAsync(QcDbContext context, CancellationToken cancellation, long from, long? to = null)
+    private static async Task<IResult> ConsistencyAsync(long from, QcDbContext context, CancellationToken cancellation, long? to = null)
     {
         long entries = await context.AuditSizeAsync(cancellation);
         long size = to ?? entries;

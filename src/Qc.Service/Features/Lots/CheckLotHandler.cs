@@ -136,7 +136,7 @@ public sealed class LotChecker(
         };
         context.Computations.Add(computation);
         await context.SaveChangesAsync(cancellation);
-        context.Traces.AddRange(report.Spectra.Select((s, i) => (Trace: s.Traces, Number: i + 1)).Where(t => t.Trace is not null).Select(t => new Trace
+        context.Traces.AddRange(report.Spectra.Select((s, i) => (Trace: s.Traces, Number: i + 1)).Where(t => t.Trace is not null).Select(t => new Records.Lots.Trace
         {
             ComputationId = computation.Id,
             SpectrumNumber = t.Number,

@@ -110,7 +110,6 @@ public sealed class SubmitLot(QcDbContext context, IDbContextOutbox<QcDbContext>
 
         try
         {
-            outbox.Enroll(context);
             await outbox.PublishAsync(new CheckLot(lot.Id));
             await context.SaveWithAuditAsync([Audit(submission, lot, product, specification, spectra.Value)], cancellation);
             await outbox.SaveChangesAndFlushMessagesAsync(cancellation);
