@@ -14,6 +14,10 @@ internal sealed class ToolkitFailedException(string message, Exception? inner) :
 /// </summary>
 internal sealed class ScriptedToolkit(TimeSpan timeLimit) : IDisposable
 {
+    // Without this, V8 recompiles hot WebAssembly in the background; when it then drops the old code, the host layer can run
+    // the clean-up inside V8's own lock, and every engine of the process stands still. Observed as a deadlock, with a native stack.
+    static ScriptedToolkit() => V8Settings.GlobalFlags |= V8GlobalFlags.DisableBackgroundWork;
+
     private readonly Lock _gate = new();
     private readonly Watchdog _watchdog = new(timeLimit);
     private V8ScriptEngine? _engine;
