@@ -13,7 +13,7 @@ public sealed class RdkitStructureReader : IStructureReader, IDisposable
     private readonly StructureLimits _limits;
     private readonly ScriptedToolkit _toolkit;
 
-    /// <summary>Prepares a reader; the toolkit itself starts at the first call.</summary>
+    /// <summary>Prepares a reader; the toolkit itself starts at the first call, once for all readers of the process.</summary>
     public RdkitStructureReader(StructureLimits? limits = null)
     {
         _limits = limits ?? new StructureLimits();
@@ -52,7 +52,7 @@ public sealed class RdkitStructureReader : IStructureReader, IDisposable
         return Drawing.Clean(svg, widthPixels, heightPixels);
     }
 
-    /// <summary>Stops the toolkit.</summary>
+    /// <summary>Ends the reader; the toolkit stays for others, until the process ends.</summary>
     public void Dispose() => _toolkit.Dispose();
 
     private StructureResult Read(string text)

@@ -4,28 +4,26 @@ namespace Qc.Chemistry.Toolkit;
 /// Calls for a stop when a guarded piece of work runs over its time. Has a thread of its own: a timer of the thread pool may never
 /// fire while all pool threads and processors are busy, which is just when it is needed.
 /// </summary>
-internal sealed class Watchdog : IDisposable
+internal sealed class Watchdog
 {
     // A stop that comes just before the work starts is lost; the next one is not.
     private static readonly TimeSpan Repeat = TimeSpan.FromMilliseconds(200);
 
     private readonly object _gate = new();
-    private readonly TimeSpan _limit;
+    private TimeSpan _limit;
     private Action? _stop;
     private long _round;
-    private bool _disposed;
 
-    /// <summary>Starts the thread.</summary>
-    public Watchdog(TimeSpan limit)
+    /// <summary>Starts the thread; it lives as long as the process.</summary>
+    public Watchdog()
     {
-        _limit = limit;
         new Thread(Watch) { IsBackground = true, Name = "structure toolkit watchdog" }.Start();
     }
 
     /// <summary>Runs work; calls <paramref name="stop"/> from another thread, again and again, once it takes too long. Not reentrant.</summary>
-    public T Guard<T>(Func<T> work, Action stop)
+    public T Guard<T>(TimeSpan limit, Func<T> work, Action stop)
     {
-        Set(stop);
+        Set(limit, stop);
         try
         {
             return work();
@@ -33,24 +31,15 @@ internal sealed class Watchdog : IDisposable
         finally
         {
             // From here on no stop can hit the next piece of work.
-            Set(null);
+            Set(limit, null);
         }
     }
 
-    /// <summary>Ends the thread.</summary>
-    public void Dispose()
+    private void Set(TimeSpan limit, Action? stop)
     {
         lock (_gate)
         {
-            _disposed = true;
-            Monitor.PulseAll(_gate);
-        }
-    }
-
-    private void Set(Action? stop)
-    {
-        lock (_gate)
-        {
+            _limit = limit;
             _stop = stop;
             _round++;
             Monitor.PulseAll(_gate);
@@ -61,7 +50,7 @@ internal sealed class Watchdog : IDisposable
     {
         lock (_gate)
         {
-            while (!_disposed)
+            while (true)
             {
                 if (_stop is null)
                 {
@@ -71,7 +60,7 @@ internal sealed class Watchdog : IDisposable
 
                 long round = _round;
                 bool woken = Monitor.Wait(_gate, _limit);
-                while (!woken && round == _round && !_disposed)
+                while (!woken && round == _round)
                 {
                     _stop();
                     woken = Monitor.Wait(_gate, Repeat);

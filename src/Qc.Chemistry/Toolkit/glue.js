@@ -1,6 +1,7 @@
 // Runs inside V8, beside the toolkit's WebAssembly module. Gives .NET two functions that take and give text.
 // Every toolkit object is deleted where it was made: the garbage collector does not reach the module's memory.
 
+let compiled = null;
 let toolkit = null;
 let log = null;
 let startFailure = null;
@@ -11,15 +12,22 @@ globalThis.self = globalThis;
 globalThis.console = { log() {}, info() {}, warn() {}, error() {}, debug() {} };
 globalThis.performance = { now: () => Date.now() };
 
-function qcStart(bytes) {
+// Compiled here and now: the promise of WebAssembly.instantiate is settled by way of the host's thread pool,
+// and on a busy host that can take for ever.
+function qcCompile(bytes) {
+  compiled = new WebAssembly.Module(bytes);
+}
+
+// Makes a fresh instance with memory of its own; an earlier one is left to the garbage collector.
+function qcStart() {
+  toolkit = null;
+  log = null;
+  startFailure = null;
   const settings = {
     locateFile: name => name,
     print() {},
     printErr() {},
     instantiateWasm(imports, done) {
-      // Compiled here and now: the promise of WebAssembly.instantiate is settled by way of the host's thread pool,
-      // and on a busy host that can take for ever.
-      const compiled = new WebAssembly.Module(bytes);
       done(new WebAssembly.Instance(compiled, imports), compiled);
       return {};
     },
