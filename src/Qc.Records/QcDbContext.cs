@@ -88,6 +88,22 @@ public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : Identit
         builder.Entity<AuditRow>().HasKey(r => r.Index);
         builder.Entity<AuditRow>().Property(r => r.Index).ValueGeneratedNever();
         builder.Entity<MerkleNode>().HasKey(n => new { n.Level, n.Index });
+        // References without navigations: EF Core then inserts in their order.
+        builder.Entity<SpecificationVersion>().HasOne<Product>().WithMany().HasForeignKey(s => s.ProductId);
+        builder.Entity<SpecificationEvent>().HasOne<SpecificationVersion>().WithMany().HasForeignKey(e => e.SpecificationId);
+        builder.Entity<SpecificationEvent>().HasOne<Signature>().WithMany().HasForeignKey(e => e.SignatureId);
+        builder.Entity<Lot>().HasOne<Product>().WithMany().HasForeignKey(l => l.ProductId);
+        builder.Entity<Lot>().HasOne<SpecificationVersion>().WithMany().HasForeignKey(l => l.SpecificationId);
+        builder.Entity<LotSpectrum>().HasOne<Lot>().WithMany().HasForeignKey(s => s.LotId);
+        builder.Entity<LotEvent>().HasOne<Lot>().WithMany().HasForeignKey(e => e.LotId);
+        builder.Entity<Computation>().HasOne<Lot>().WithMany().HasForeignKey(c => c.LotId);
+        builder.Entity<Trace>().HasOne<Computation>().WithMany().HasForeignKey(t => t.ComputationId);
+        builder.Entity<Review>().HasOne<Lot>().WithMany().HasForeignKey(r => r.LotId);
+        builder.Entity<Review>().HasOne<Computation>().WithMany().HasForeignKey(r => r.ComputationId);
+        builder.Entity<Review>().HasOne<Signature>().WithMany().HasForeignKey(r => r.SignatureId);
+        builder.Entity<Certificate>().HasOne<Lot>().WithMany().HasForeignKey(c => c.LotId);
+        builder.Entity<IdempotencyRecord>().HasOne<Lot>().WithMany().HasForeignKey(r => r.LotId);
+        builder.Entity<LimsKeyRevocation>().HasOne<LimsKey>().WithOne().HasForeignKey<LimsKeyRevocation>(r => r.KeyId);
         builder.Entity<TreeHeadRow>().ToTable("tree_heads").HasKey(h => new { h.Size, h.At });
     }
 }

@@ -7,6 +7,8 @@ namespace Qc.Service.Http;
 /// <summary>Reads a JSON body strictly and says where it is wrong.</summary>
 public static class JsonBody
 {
+    private const string NotJson = "It is not valid JSON.";
+
     /// <summary>The body as <typeparamref name="T"/>, or a problem that points at the place.</summary>
     public static async Task<Outcome<T>> ReadAsync<T>(HttpRequest request, CancellationToken cancellation)
         where T : class
@@ -42,7 +44,7 @@ public static class JsonBody
         {
             string pointer = Pointer(e.Path);
             string place = string.Create(CultureInfo.InvariantCulture, $"line {(e.LineNumber ?? 0) + 1}, byte {(e.BytePositionInLine ?? 0) + 1}");
-            return pointer.Length > 0
+            return pointer.Length > 0 && Reason(e) != NotJson
                 ? Problem.Invalid("invalid-field", "A field is wrong", $"The body is wrong at {pointer} ({place}).", new FieldError(pointer, Reason(e)))
                 : Problem.Malformed($"The body is not the JSON that is expected ({place}). {Reason(e)}");
         }
@@ -68,7 +70,7 @@ public static class JsonBody
 
         return e.Message.StartsWith("The JSON value could not be converted", StringComparison.Ordinal)
             ? "This value has the wrong type."
-            : "It is not valid JSON.";
+            : NotJson;
     }
 
     /// <summary>"$.sample.massMg" and "$.spectra[0].name" as RFC 6901 pointers; the root is "".</summary>
