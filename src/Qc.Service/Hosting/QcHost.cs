@@ -12,6 +12,7 @@ using Qc.Records.Schema;
 using Qc.Service.Features.Audit;
 using Qc.Service.Features.Certificates;
 using Qc.Service.Features.Lots;
+using Qc.Service.Features.Pages;
 using Qc.Service.Features.People;
 using Qc.Service.Features.Products;
 using Qc.Service.Features.Reviews;
@@ -130,6 +131,7 @@ public static class QcHost
         });
         services.AddExceptionHandler<UnexpectedErrors>().AddProblemDetails();
         services.AddOpenApi("v1", openApi => openApi.OpenApiVersion = Microsoft.OpenApi.OpenApiSpecVersion.OpenApi3_1);
+        builder.AddQcPages();
         services.AddHealthChecks().AddCheck<Readiness>("ready");
         services.AddOpenTelemetry().WithMetrics(metrics => metrics
             .AddMeter(QcMetrics.MeterName).AddAspNetCoreInstrumentation().AddRuntimeInstrumentation().AddPrometheusExporter());
@@ -189,6 +191,7 @@ public static class QcHost
         api.MapCertificates();
         api.MapAudit();
         api.MapPeople();
+        app.MapQcPages();
     }
 
     private static Task AnswerOrRedirect(RedirectContext<Microsoft.AspNetCore.Authentication.Cookies.CookieAuthenticationOptions> context, int status)
