@@ -9,6 +9,7 @@ using Qc.Records;
 using Qc.Records.People;
 using Qc.Records.PrivateServer;
 using Qc.Records.Schema;
+using Qc.Service.Demo;
 using Qc.Service.Features.Audit;
 using Qc.Service.Features.Certificates;
 using Qc.Service.Features.Lots;
@@ -51,6 +52,11 @@ public static class QcHost
         Map(app);
         await app.StartAsync();
         await FirstAdministrator.MakeAsync(app.Services, app.Configuration);
+        if (options.Demo)
+        {
+            await DemoLoader.LoadAsync(app, options, app.Lifetime.ApplicationStopping);
+        }
+
         app.Services.GetRequiredService<Readiness>().IsLoaded = true;
         app.Logger.LogInformation("Qc listens on {Urls}", string.Join(", ", app.Urls));
         await app.WaitForShutdownAsync();

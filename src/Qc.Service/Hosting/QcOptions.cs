@@ -32,7 +32,7 @@ public sealed record QcOptions
         OwnerConnection = configuration.GetConnectionString("Owner") ?? FromFile(configuration["Qc:OwnerConnectionFile"]),
         ApplicationConnection = configuration.GetConnectionString("Application") ?? FromFile(configuration["Qc:ApplicationConnectionFile"]),
         RabbitMq = configuration["Qc:RabbitMq"],
-        Site = configuration["Qc:Site"] ?? "Qc site",
+        Site = configuration["Qc:Site"] ?? (args.Contains("--demo", StringComparer.Ordinal) ? Qc.Service.Demo.DemoPlant.Site : "Qc site"),
     };
 
     /// <summary>Secrets may come from files, as container platforms mount them.</summary>

@@ -1,0 +1,173 @@
+using System.Net;
+using System.Net.Http.Headers;
+using System.Net.Http.Json;
+using System.Security.Cryptography;
+using System.Text.Json;
+using System.Text.Json.Nodes;
+using Qc.Records.People;
+using Qc.Service.Features.People;
+using Qc.Service.Hosting;
+using Qc.Service.Http;
+
+namespace Qc.Service.Demo;
+
+/// <summary>
+/// Loads the demo plant by posting it through the public API, as a LIMS and people would, and writes demo.json. A second
+/// start finds the plant and only renews the address. Only the first administrator is made inside, since nobody exists before.
+/// </summary>
+internal static class DemoLoader
+{
+    private const string FileName = "demo.json";
+
+    public static async Task LoadAsync(WebApplication app, QcOptions options, CancellationToken cancellation)
+    {
+        string url = app.Urls.First().Replace("0.0.0.0", "127.0.0.1", StringComparison.Ordinal).Replace("[::]", "127.0.0.1", StringComparison.Ordinal);
+        string file = Path.Combine(options.DataFolder, FileName);
+        if (File.Exists(file))
+        {
+            JsonNode known = JsonNode.Parse(await File.ReadAllTextAsync(file, cancellation))!;
+            known["url"] = url;
+            SecretFile.Write(file, known.ToJsonString(new JsonSerializerOptions { WriteIndented = true }));
+            Announce(app, known, file);
+            return;
+        }
+
+        var passwords = DemoPlant.People.ToDictionary(p => p.User, _ => Password());
+        await MakeAdministratorAsync(app.Services, passwords, cancellation);
+        app.Logger.LogInformation("Loading the demo plant: {People} people, {Products} products, {Lots} lots", DemoPlant.People.Count, DemoPlant.Products.Count, DemoPlant.Lots.Count);
+        string key = await LoadPeopleAsync(url, passwords, cancellation);
+        await LoadProductsAsync(url, passwords, cancellation);
+        await LoadLotsAsync(url, passwords, key, app.Logger, cancellation);
+        var demo = new JsonObject
+        {
+            ["url"] = url,
+            ["people"] = new JsonArray(
+            [
+                .. DemoPlant.People.Select(p => (JsonNode)new JsonObject
+                {
+                    ["user"] = p.User,
+                    ["printedName"] = p.PrintedName,
+                    ["password"] = passwords[p.User],
+                    ["roles"] = new JsonArray([.. p.Roles.Select(r => (JsonNode)r)]),
+                }),
+            ]),
+            ["limsKey"] = key,
+        };
+        SecretFile.Write(file, demo.ToJsonString(new JsonSerializerOptions { WriteIndented = true }));
+        Announce(app, demo, file);
+    }
+
+    private static void Announce(WebApplication app, JsonNode demo, string file)
+    {
+        JsonNode reviewer = demo["people"]!.AsArray().First(p => p!["roles"]!.AsArray().Any(r => (string?)r == Roles.Reviewer))!;
+        app.Logger.LogInformation(
+            "Demo plant ready. Open {Url} and sign in as {User} with the password {Password}; everybody else is in {File}",
+            (string?)demo["url"], (string?)reviewer["user"], (string?)reviewer["password"], file);
+    }
+
+    private static string Password() => Convert.ToHexStringLower(RandomNumberGenerator.GetBytes(10));
+
+    private static async Task MakeAdministratorAsync(IServiceProvider services, Dictionary<string, string> passwords, CancellationToken cancellation)
+    {
+        await using AsyncServiceScope scope = services.CreateAsyncScope();
+        ManagePeople people = scope.ServiceProvider.GetRequiredService<ManagePeople>();
+        DemoPerson administrator = DemoPlant.People.First(p => p.Roles.Contains(Roles.Administrator));
+        Outcome<Person> made = await people.AddAsync(
+            new PersonRequest
+            {
+                User = administrator.User, PrintedName = administrator.PrintedName, Password = passwords[administrator.User], Roles = administrator.Roles,
+            },
+            "service",
+            cancellation);
+        if (made.Problem is { } problem)
+        {
+            throw new InvalidOperationException(
+                $"The demo cannot be loaded into this data folder ({problem.Detail}); use an empty folder, or start without --demo.");
+        }
+    }
+
+    private static async Task<string> LoadPeopleAsync(string url, Dictionary<string, string> passwords, CancellationToken cancellation)
+    {
+        DemoPerson administrator = DemoPlant.People.First(p => p.Roles.Contains(Roles.Administrator));
+        using HttpClient client = await SignInAsync(url, administrator.User, passwords, cancellation);
+        foreach (DemoPerson person in DemoPlant.People.Where(p => p != administrator))
+        {
+            await PostAsync(
+                client, "people", new { user = person.User, printedName = person.PrintedName, password = passwords[person.User], roles = person.Roles }, cancellation);
+        }
+
+        JsonNode key = await PostAsync(client, "keys", new { name = "LIMS", scopes = new[] { "lots:write", "lots:read", "products:read" } }, cancellation);
+        return (string)key["key"]!;
+    }
+
+    private static async Task LoadProductsAsync(string url, Dictionary<string, string> passwords, CancellationToken cancellation)
+    {
+        using HttpClient owner = await SignInAsync(url, Holder(Roles.MethodOwner), passwords, cancellation);
+        using HttpClient quality = await SignInAsync(url, Holder(Roles.QualityUnit), passwords, cancellation);
+        foreach (DemoProduct product in DemoPlant.Products)
+        {
+            await PostAsync(
+                owner,
+                "products",
+                new { code = product.Code, name = product.Name, structure = new { smiles = product.Smiles }, solvent = product.Solvent, nucleus = "1H" },
+                cancellation);
+            await PostAsync(owner, $"products/{product.Code}/specifications", product.Specification, cancellation);
+            await PostAsync(
+                quality, $"products/{product.Code}/specifications/1/approve", new { password = passwords[Holder(Roles.QualityUnit)] }, cancellation);
+        }
+    }
+
+    private static async Task LoadLotsAsync(string url, Dictionary<string, string> passwords, string key, ILogger logger, CancellationToken cancellation)
+    {
+        using var lims = Client(url);
+        lims.DefaultRequestHeaders.Authorization = new AuthenticationHeaderValue("Bearer", key);
+        lims.DefaultRequestHeaders.Add("Prefer", "wait=60");
+        using HttpClient reviewer = await SignInAsync(url, Holder(Roles.Reviewer), passwords, cancellation);
+        foreach (DemoLot lot in DemoPlant.Lots)
+        {
+            JsonNode answer = await PostAsync(
+                lims,
+                "lots",
+                new
+                {
+                    product = lot.Product,
+                    lot = lot.Lot,
+                    sample = lot.Sample,
+                    instrument = lot.Measurement.FrequencyMHz < 100 ? "bench-2" : "high-field-1",
+                    spectra = new[] { new { name = "proton", format = "jcamp-dx", content = DemoPlant.File(lot), encoding = "text" } },
+                },
+                cancellation);
+            logger.LogInformation("Lot {Lot} of {Product}: {State} {Verdict}", lot.Lot, lot.Product, (string?)answer["state"], (string?)answer["verdict"]);
+            if (lot.Decision is { } decision)
+            {
+                string reason = decision == "release" ? "All findings pass; the spectrum is that of the product." : "The spectrum is that of another ester.";
+                await PostAsync(
+                    reviewer, $"lots/{answer["id"]}/reviews", new { decision, reason, password = passwords[Holder(Roles.Reviewer)] }, cancellation);
+            }
+        }
+    }
+
+    private static string Holder(string role) => DemoPlant.People.First(p => p.Roles.Contains(role)).User;
+
+    private static HttpClient Client(string url) => new(new SocketsHttpHandler { CookieContainer = new CookieContainer(), UseProxy = false })
+    {
+        BaseAddress = new Uri($"{url}/api/v1/"),
+        Timeout = TimeSpan.FromMinutes(3),
+    };
+
+    private static async Task<HttpClient> SignInAsync(string url, string user, Dictionary<string, string> passwords, CancellationToken cancellation)
+    {
+        HttpClient client = Client(url);
+        await PostAsync(client, "session", new { user, password = passwords[user] }, cancellation);
+        return client;
+    }
+
+    private static async Task<JsonNode> PostAsync(HttpClient client, string path, object body, CancellationToken cancellation)
+    {
+        using HttpResponseMessage response = await client.PostAsJsonAsync(path, body, Json.Options, cancellation);
+        string text = await response.Content.ReadAsStringAsync(cancellation);
+        return response.IsSuccessStatusCode
+            ? JsonNode.Parse(text)!
+            : throw new InvalidOperationException($"The demo could not be loaded: POST {path} answered {(int)response.StatusCode}: {text}");
+    }
+}
