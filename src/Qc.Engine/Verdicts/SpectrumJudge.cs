@@ -49,6 +49,7 @@ internal static class SpectrumJudge
             .. PatternRule.Judge(judged),
             .. CouplingRule.Judge(judged),
             .. UnaccountedRule.Judge(judged, leftOver),
+            .. ImpurityRule.Judge(judged),
             .. RivalRule.Judge(request.Criteria, request.ProductName, rivals),
             .. AssayRule.Judge(judged, assay),
         ];

@@ -38,7 +38,8 @@ public static class QcHost
     /// <summary>Runs until it is stopped.</summary>
     public static async Task RunAsync(string[] args)
     {
-        WebApplicationBuilder builder = WebApplication.CreateBuilder(args);
+        // A bare switch would take the next argument as its value.
+        WebApplicationBuilder builder = WebApplication.CreateBuilder([.. args.Where(a => a != QcOptions.DemoSwitch)]);
         QcOptions options = QcOptions.From(builder.Configuration, args, builder.Environment.ContentRootPath);
         Directory.CreateDirectory(options.DataFolder);
         AddLogging(builder, options);

@@ -3,6 +3,9 @@ namespace Qc.Service.Hosting;
 /// <summary>What the command line and the configuration say.</summary>
 public sealed record QcOptions
 {
+    /// <summary>Command-line switch of the demo.</summary>
+    public const string DemoSwitch = "--demo";
+
     /// <summary>Whether to load the demo plant.</summary>
     public bool Demo { get; init; }
 
@@ -27,12 +30,12 @@ public sealed record QcOptions
     /// <summary>Reads them.</summary>
     public static QcOptions From(IConfiguration configuration, string[] args, string contentRoot) => new()
     {
-        Demo = args.Contains("--demo", StringComparer.Ordinal),
+        Demo = args.Contains(DemoSwitch, StringComparer.Ordinal),
         DataFolder = Path.GetFullPath(configuration["data"] ?? configuration["Qc:DataFolder"] ?? Path.Combine(contentRoot, ".qc")),
         OwnerConnection = configuration.GetConnectionString("Owner") ?? FromFile(configuration["Qc:OwnerConnectionFile"]),
         ApplicationConnection = configuration.GetConnectionString("Application") ?? FromFile(configuration["Qc:ApplicationConnectionFile"]),
         RabbitMq = configuration["Qc:RabbitMq"],
-        Site = configuration["Qc:Site"] ?? (args.Contains("--demo", StringComparer.Ordinal) ? Qc.Service.Demo.DemoPlant.Site : "Qc site"),
+        Site = configuration["Qc:Site"] ?? (args.Contains(DemoSwitch, StringComparer.Ordinal) ? Qc.Service.Demo.DemoPlant.Site : "Qc site"),
     };
 
     /// <summary>Secrets may come from files, as container platforms mount them.</summary>
