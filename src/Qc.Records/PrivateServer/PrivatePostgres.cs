@@ -3,7 +3,6 @@ using System.Globalization;
 using System.Net;
 using System.Net.Sockets;
 using System.Security.Cryptography;
-using System.Text;
 using Microsoft.Extensions.Logging;
 using Npgsql;
 
@@ -20,18 +19,20 @@ public sealed class PrivatePostgres : IAsyncDisposable
     private const string Application = "qc_app";
     private const string DatabaseName = "qc";
     private static readonly TimeSpan StartLimit = TimeSpan.FromSeconds(60);
-    private readonly Process _process;
+    private readonly ServerProcess _process;
+    private readonly ServerFolder _folder;
     private readonly string _programs;
-    private readonly string _cluster;
     private readonly int _port;
     private readonly string _ownerPassword;
     private readonly string _applicationPassword;
+    private int _disposed;
 
-    private PrivatePostgres(Process process, string programs, string cluster, int port, string ownerPassword, string applicationPassword)
+    private PrivatePostgres(
+        ServerProcess process, ServerFolder folder, string programs, int port, string ownerPassword, string applicationPassword)
     {
         _process = process;
+        _folder = folder;
         _programs = programs;
-        _cluster = cluster;
         _port = port;
         _ownerPassword = ownerPassword;
         _applicationPassword = applicationPassword;
@@ -46,7 +47,8 @@ public sealed class PrivatePostgres : IAsyncDisposable
     /// <summary>Process id of the server, for tests that kill it.</summary>
     public int ProcessId => _process.Id;
 
-    /// <summary>Starts the server on a new or an existing data folder. A server left over from a killed process is stopped first.</summary>
+    /// <summary>Starts the server on a new or an existing data folder. A server left over from a killed process is stopped first.
+    /// Only one process may use a data folder at a time.</summary>
     /// <param name="dataFolder">Where everything is kept.</param>
     /// <param name="logger">Told what happens; may be null.</param>
     /// <param name="packageFolder">The npm package's folder; null to look for it above the program.</param>
@@ -55,37 +57,35 @@ public sealed class PrivatePostgres : IAsyncDisposable
     public static async Task<PrivatePostgres> StartAsync(
         string dataFolder, ILogger? logger = null, string? packageFolder = null, CancellationToken cancellation = default)
     {
-        string folder = ReachableFolder(Path.GetFullPath(dataFolder), logger);
-        Directory.CreateDirectory(folder);
-        string programs = PostgresBinaries.CopyTo(folder, packageFolder);
-        string cluster = Path.Combine(folder, "cluster");
-        string ownerPassword = Password(folder, "owner");
-        string applicationPassword = Password(folder, "application");
-        if (!File.Exists(Path.Combine(cluster, "PG_VERSION")))
-        {
-            await InitialiseAsync(programs, folder, cluster, ownerPassword, cancellation);
-        }
-        else
-        {
-            await StopLeftOverAsync(programs, cluster, logger, cancellation);
-        }
-
-        int port = FreePort();
-        Process process = StartServer(programs, cluster, port, Path.Combine(folder, "postgresql.log"));
-        var server = new PrivatePostgres(process, programs, cluster, port, ownerPassword, applicationPassword);
+        string root = Path.GetFullPath(dataFolder);
+        ServerFolder folder = ServerFolder.Take(root, logger);
         try
         {
-            await server.WaitUntilReadyAsync(cancellation);
-            await server.PrepareDatabaseAsync(cancellation);
+            string programs = PostgresBinaries.CopyTo(folder.Path, packageFolder);
+            string ownerPassword = Password(folder.Path, "owner");
+            string applicationPassword = Password(folder.Path, "application");
+            if (File.Exists(Path.Combine(folder.Cluster, "PG_VERSION")))
+            {
+                await LeftOverServer.StopAsync(Program(programs, "pg_ctl"), folder.Cluster, logger, cancellation);
+            }
+            else
+            {
+                await InitialiseAsync(programs, folder, ownerPassword, cancellation);
+            }
+
+            string logFile = Path.Combine(Directory.CreateDirectory(Path.Combine(root, "logs")).FullName, "postgresql.log");
+            int port = FreePort();
+            ServerProcess process = await StartServerAsync(programs, folder.Cluster, port, logFile);
+            var server = new PrivatePostgres(process, folder, programs, port, ownerPassword, applicationPassword);
+            await server.MakeReadyAsync(logFile, cancellation);
+            logger?.LogInformation("Private PostgreSQL runs on 127.0.0.1:{Port} with its data in {Folder}", port, folder.Cluster);
+            return server;
         }
         catch
         {
-            await server.DisposeAsync();
+            folder.Dispose();
             throw;
         }
-
-        logger?.LogInformation("Private PostgreSQL runs on 127.0.0.1:{Port} with its data in {Folder}", port, cluster);
-        return server;
     }
 
     /// <summary>Creates an empty database with the same roles, for a test; returns the owner's and the application's connection.</summary>
@@ -103,14 +103,31 @@ public sealed class PrivatePostgres : IAsyncDisposable
     /// <summary>Stops the server: open transactions are rolled back, nothing committed is lost.</summary>
     public async ValueTask DisposeAsync()
     {
-        NpgsqlConnection.ClearAllPools();
-        if (!_process.HasExited)
+        if (Interlocked.Exchange(ref _disposed, 1) == 1)
         {
-            await ServerAccount.RunAsync(
-                Program(_programs, "pg_ctl"), ["stop", "-D", _cluster, "-m", "fast", "-w", "-t", "20"], CancellationToken.None);
+            return;
         }
 
+        foreach (string connection in new[] { OwnerConnectionString, ApplicationConnectionString })
+        {
+            await using var pool = new NpgsqlConnection(connection);
+            NpgsqlConnection.ClearPool(pool);
+        }
+
+        if (!_process.HasExited)
+        {
+            (int exitCode, _) = await ServerAccount.RunAsync(
+                Program(_programs, "pg_ctl"), ["stop", "-D", _folder.Cluster, "-m", "fast", "-w", "-t", "20"], CancellationToken.None);
+            if (exitCode != 0 && !_process.HasExited)
+            {
+                _process.Kill();
+            }
+        }
+
+        await LeftOverServer.EndBackendsAsync(_folder.Cluster, null, CancellationToken.None);
+        await _process.WaitForExitAsync(CancellationToken.None);
         _process.Dispose();
+        _folder.Dispose();
     }
 
     private string ConnectionString(string user, string password, string database) => new NpgsqlConnectionStringBuilder
@@ -124,90 +141,73 @@ public sealed class PrivatePostgres : IAsyncDisposable
         MaxPoolSize = 60,
     }.ConnectionString;
 
-    /// <summary>A folder that the server's account can reach; elsewhere only where root keeps its data under a closed folder.</summary>
-    private static string ReachableFolder(string dataFolder, ILogger? logger)
+    private static async Task InitialiseAsync(string programs, ServerFolder folder, string ownerPassword, CancellationToken cancellation)
     {
-        string wanted = Path.Combine(dataFolder, "postgresql");
-        if (OperatingSystem.IsWindows() || !ServerAccount.IsNeeded || ServerAccount.CanReach(wanted))
+        // Made under another name first, so that a cluster that was interrupted while being made is never taken for a whole one.
+        string unfinished = folder.Cluster + "-unfinished";
+        if (Directory.Exists(unfinished))
         {
-            return wanted;
+            Directory.Delete(unfinished, recursive: true);
         }
 
-        string digest = Convert.ToHexStringLower(SHA256.HashData(Encoding.UTF8.GetBytes(dataFolder)))[..12];
-        string instead = Path.Combine("/var/tmp", $"qc-postgresql-{digest}");
-        logger?.LogWarning("The account nobody cannot reach {Wanted}; PostgreSQL keeps its data in {Instead}", wanted, instead);
-        return instead;
-    }
-
-    private static async Task InitialiseAsync(string programs, string folder, string cluster, string ownerPassword, CancellationToken cancellation)
-    {
-        // The password file is read by initdb's account and removed at once.
-        string passwordFile = Path.Combine(folder, "initdb-password");
-        Directory.CreateDirectory(cluster);
-        await File.WriteAllTextAsync(passwordFile, ownerPassword, cancellation);
+        Directory.CreateDirectory(unfinished);
+        string passwordFile = Path.Combine(folder.Path, "initdb-password");
+        WriteSecret(passwordFile, ownerPassword, FileMode.Create);
         try
         {
-            await ServerAccount.GiveAsync(cluster, cancellation);
+            await ServerAccount.GiveAsync(unfinished, cancellation);
             await ServerAccount.GiveAsync(passwordFile, cancellation);
             (int exitCode, string output) = await ServerAccount.RunAsync(
                 Program(programs, "initdb"),
-                ["-D", cluster, "-U", Owner, $"--pwfile={passwordFile}", "-A", "scram-sha-256", "-E", "UTF8", "--locale=C", "--no-instructions"],
+                ["-D", unfinished, "-U", Owner, $"--pwfile={passwordFile}", "-A", "scram-sha-256", "-E", "UTF8", "--locale=C", "--no-instructions"],
                 cancellation);
             if (exitCode != 0)
             {
-                throw new PrivatePostgresException($"initdb failed in {cluster}: {output}");
+                throw new PrivatePostgresException($"initdb failed in {unfinished}: {output}");
             }
         }
         finally
         {
             File.Delete(passwordFile);
         }
+
+        Directory.Move(unfinished, folder.Cluster);
     }
 
-    private static async Task StopLeftOverAsync(string programs, string cluster, ILogger? logger, CancellationToken cancellation)
+    private static Task<ServerProcess> StartServerAsync(string programs, string cluster, int port, string logFile) =>
+        ServerProcess.StartAsync(
+            ServerAccount.StartServer(
+                Program(programs, "postgres"),
+                "-D", cluster,
+                "-c", "listen_addresses=127.0.0.1",
+                "-c", $"port={port.ToString(CultureInfo.InvariantCulture)}",
+                "-c", "unix_socket_directories=",
+                "-c", "max_connections=200",
+                "-c", "timezone=UTC"),
+            logFile);
+
+    private async Task MakeReadyAsync(string logFile, CancellationToken cancellation)
     {
-        string pidFile = Path.Combine(cluster, "postmaster.pid");
-        if (!File.Exists(pidFile))
+        try
         {
-            return;
+            await WaitUntilReadyAsync(logFile, cancellation);
+            await PrepareDatabaseAsync(cancellation);
         }
-
-        (int running, _) = await ServerAccount.RunAsync(Program(programs, "pg_ctl"), ["status", "-D", cluster], cancellation);
-        if (running == 0)
+        catch
         {
-            logger?.LogWarning("A PostgreSQL server of an earlier run still uses {Cluster}; it is stopped", cluster);
-            await ServerAccount.RunAsync(
-                Program(programs, "pg_ctl"), ["stop", "-D", cluster, "-m", "fast", "-w", "-t", "30"], cancellation);
+            await DisposeAsync();
+            throw;
         }
     }
 
-    private static Process StartServer(string programs, string cluster, int port, string logFile)
-    {
-        ProcessStartInfo info = ServerAccount.Start(
-            Program(programs, "postgres"),
-            "-D", cluster,
-            "-c", "listen_addresses=127.0.0.1",
-            "-c", $"port={port.ToString(CultureInfo.InvariantCulture)}",
-            "-c", "unix_socket_directories=",
-            "-c", "max_connections=200",
-            "-c", "timezone=UTC");
-        Process process = Process.Start(info) ?? throw new PrivatePostgresException("postgres could not be started.");
-        var log = TextWriter.Synchronized(new StreamWriter(logFile, append: true) { AutoFlush = true });
-        process.OutputDataReceived += (_, line) => log.WriteLine(line.Data);
-        process.ErrorDataReceived += (_, line) => log.WriteLine(line.Data);
-        process.BeginOutputReadLine();
-        process.BeginErrorReadLine();
-        return process;
-    }
-
-    private async Task WaitUntilReadyAsync(CancellationToken cancellation)
+    private async Task WaitUntilReadyAsync(string logFile, CancellationToken cancellation)
     {
         var watch = Stopwatch.StartNew();
         while (true)
         {
             if (_process.HasExited)
             {
-                throw new PrivatePostgresException($"PostgreSQL stopped while starting; see postgresql.log beside {_cluster}.");
+                throw new PrivatePostgresException($"PostgreSQL stopped while starting; {logFile} says why.");
             }
 
             try
@@ -269,15 +269,20 @@ public sealed class PrivatePostgres : IAsyncDisposable
         }
 
         string password = Convert.ToHexStringLower(RandomNumberGenerator.GetBytes(24));
-        var options = new FileStreamOptions { Mode = FileMode.CreateNew, Access = FileAccess.Write };
+        WriteSecret(file, password, FileMode.CreateNew);
+        return password;
+    }
+
+    private static void WriteSecret(string file, string secret, FileMode mode)
+    {
+        var options = new FileStreamOptions { Mode = mode, Access = FileAccess.Write };
         if (!OperatingSystem.IsWindows())
         {
             options.UnixCreateMode = UnixFileMode.UserRead | UnixFileMode.UserWrite;
         }
 
         using var writer = new StreamWriter(file, options);
-        writer.Write(password);
-        return password;
+        writer.Write(secret);
     }
 
     private static int FreePort()

@@ -11,6 +11,9 @@ internal static class ServerAccount
 {
     private const string Unprivileged = "nobody";
 
+    // SIGINT is PostgreSQL's fast shutdown: open transactions are rolled back, nothing committed is lost.
+    private const string DeathSignal = "--pdeathsig=INT";
+
     /// <summary>Whether another account has to be used.</summary>
     public static bool IsNeeded => !OperatingSystem.IsWindows() && Environment.IsPrivilegedProcess;
 
@@ -42,16 +45,56 @@ internal static class ServerAccount
         return info;
     }
 
+    /// <summary>
+    /// A start of the server: in a session of its own, so that Ctrl+C at the terminal stops the service first and the
+    /// database after it; and, where Linux can, ended with this process however that ends.
+    /// </summary>
+    public static ProcessStartInfo StartServer(string program, params IEnumerable<string> arguments)
+    {
+        ProcessStartInfo info = Start(program, arguments);
+        if (!OperatingSystem.IsLinux())
+        {
+            return info;
+        }
+
+        if (IsNeeded)
+        {
+            info.ArgumentList.Insert(0, DeathSignal);
+        }
+        else if (Find("setpriv") is { } setpriv)
+        {
+            Wrap(info, setpriv, DeathSignal, "--");
+        }
+
+        if (Find("setsid") is { } setsid)
+        {
+            Wrap(info, setsid);
+        }
+
+        return info;
+    }
+
     /// <summary>Runs a program to its end and returns its exit code and what it printed.</summary>
     public static async Task<(int ExitCode, string Output)> RunAsync(
         string program, IEnumerable<string> arguments, CancellationToken cancellation)
     {
-        using Process process = Process.Start(Start(program, arguments))
-            ?? throw new PrivatePostgresException($"{program} could not be started.");
+        using Process process = Launch(Start(program, arguments));
         Task<string> output = process.StandardOutput.ReadToEndAsync(cancellation);
         Task<string> errors = process.StandardError.ReadToEndAsync(cancellation);
         await process.WaitForExitAsync(cancellation);
         return (process.ExitCode, await output + await errors);
+    }
+
+    private static Process Launch(ProcessStartInfo info)
+    {
+        try
+        {
+            return Process.Start(info) ?? throw new PrivatePostgresException($"{info.FileName} could not be started.");
+        }
+        catch (System.ComponentModel.Win32Exception e)
+        {
+            throw new PrivatePostgresException($"{info.FileName} could not be started: {e.Message}", e);
+        }
     }
 
     /// <summary>Gives a folder to the account that the server runs under.</summary>
@@ -84,6 +127,21 @@ internal static class ServerAccount
 
         return true;
     }
+
+    private static void Wrap(ProcessStartInfo info, string program, params string[] options)
+    {
+        string[] inner = [.. options, info.FileName, .. info.ArgumentList];
+        info.FileName = program;
+        info.ArgumentList.Clear();
+        foreach (string argument in inner)
+        {
+            info.ArgumentList.Add(argument);
+        }
+    }
+
+    private static string? Find(string program) =>
+        (Environment.GetEnvironmentVariable("PATH") ?? "").Split(Path.PathSeparator, StringSplitOptions.RemoveEmptyEntries)
+            .Select(folder => Path.Combine(folder, program)).FirstOrDefault(File.Exists);
 
     private static string UnprivilegedGroup() =>
         File.Exists("/etc/group") && File.ReadLines("/etc/group").Any(l => l.StartsWith("nogroup:", StringComparison.Ordinal))
