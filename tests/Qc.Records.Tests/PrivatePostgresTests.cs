@@ -61,9 +61,10 @@ public class PrivatePostgresTests(DataFolder shared) : IClassFixture<DataFolder>
     [Fact]
     public async Task A_process_id_file_that_names_another_program_stops_neither_that_program_nor_the_start()
     {
-        string cluster = Path.Combine(_folder, "postgresql", "cluster");
-        await using (await PrivatePostgres.StartAsync(_folder))
+        string cluster;
+        await using (PrivatePostgres first = await PrivatePostgres.StartAsync(_folder))
         {
+            cluster = (string)(await Execute(first.OwnerConnectionString, "SHOW data_directory"))!;
         }
 
         using Process stranger = Process.Start("sleep", "60");

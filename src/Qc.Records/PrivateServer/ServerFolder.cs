@@ -34,6 +34,7 @@ internal sealed class ServerFolder : IDisposable
         try
         {
             Directory.CreateDirectory(path);
+            LetServerPass(path);
         }
         catch (Exception e) when (e is IOException or UnauthorizedAccessException)
         {
@@ -54,6 +55,23 @@ internal sealed class ServerFolder : IDisposable
 
     /// <inheritdoc/>
     public void Dispose() => _lock.Dispose();
+
+    /// <summary>Others may pass through, whatever the umask; they may not list, and the password files stay their owner's.</summary>
+    private static void LetServerPass(string path)
+    {
+        if (OperatingSystem.IsWindows() || !ServerAccount.IsNeeded)
+        {
+            return;
+        }
+
+        const UnixFileMode passable =
+            UnixFileMode.UserRead | UnixFileMode.UserWrite | UnixFileMode.UserExecute | UnixFileMode.GroupExecute | UnixFileMode.OtherExecute;
+        File.SetUnixFileMode(path, passable);
+        if (System.IO.Path.GetDirectoryName(path) == Elsewhere)
+        {
+            File.SetUnixFileMode(Elsewhere, passable);
+        }
+    }
 
     private static string Find(string dataFolder, ILogger? logger)
     {

@@ -8,7 +8,7 @@ namespace Qc.Records.PrivateServer;
 /// </summary>
 internal sealed class ServerProcess : IDisposable
 {
-    private readonly ManualResetEventSlim _released = new();
+    private readonly ManualResetEventSlim _released;
     private readonly Process _process;
     private readonly StreamWriter _log;
 
