@@ -58,6 +58,7 @@ internal sealed class FitReading
         AreaPerProton = AreaPerProton,
         AreaPerProtonRelativeUncertainty = AreaPerProtonRelativeUncertainty,
         WidthHertz = WidthHertz,
+        MeasuredWidthHertz = TypicalWidthHertz,
         Modelled = Modelled,
         Converged = _state.Converged,
         LogEvidence = LogEvidence(),
@@ -267,7 +268,7 @@ internal sealed class FitReading
         {
             double area = Area(known.Amplitude);
             double u = Known(_state.AmplitudeUncertainties, known.Amplitude) * (area / Math.Max(_state.Amplitudes[known.Amplitude], 1e-300));
-            if (area > 3 * u && area > 0)
+            if (area > 3 * u && area > 0 && (known.Substance.Role != "impurity" || IsBackedByMeasurement(known, area)))
             {
                 yield return new OtherFit(
                     known.Substance.Name,
@@ -297,6 +298,10 @@ internal sealed class FitReading
             }
         }
     }
+
+    /// <summary>An impurity cannot have more signal than was measured at its places; a fit that says so went astray there.</summary>
+    private bool IsBackedByMeasurement(KnownColumns known, double area) =>
+        area < 1.5 * known.Substance.Signals.Select((signal, s) => Areas(SignalRegion(signal, known, s)).Measured).Sum();
 
     private Interval SignalRegion(KnownSignal signal, KnownColumns known, int index)
     {

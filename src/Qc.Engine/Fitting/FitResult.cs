@@ -84,6 +84,9 @@ public sealed record FitResult
     /// <summary>Fitted width at half height of the sharp lines, in Hz.</summary>
     public required double WidthHertz { get; init; }
 
+    /// <summary>Width at half height as measured on the lines that stand clear, in Hz; what a shim is judged by.</summary>
+    public required double MeasuredWidthHertz { get; init; }
+
     /// <summary>The model at every point of the spectrum.</summary>
     public required double[] Modelled { get; init; }
 

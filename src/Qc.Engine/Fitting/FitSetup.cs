@@ -75,7 +75,7 @@ internal sealed class FitSetup
             foreach (KnownSignal signal in substance.Signals)
             {
                 double hertz = signal.ShiftPpm * frequencyMHz;
-                double reach = Math.Max(4, 0.03 * frequencyMHz);
+                double reach = substance.Role == "impurity" ? Math.Max(2, 0.006 * frequencyMHz) : Math.Max(4, 0.03 * frequencyMHz);
                 int shift = Model.Add(new FitParameter(
                     $"shift {substance.Name}", hertz, hertz, Math.Max(2, 0.01 * frequencyMHz), hertz - reach, hertz + reach, 4));
                 shifts.Add(shift);

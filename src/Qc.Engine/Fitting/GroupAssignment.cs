@@ -159,9 +159,14 @@ internal static class GroupAssignment
         return finished.OrderBy(a => a.Cost).Take(wanted);
     }
 
+    /// <summary>
+    /// A group alone in a signal of its own size lies at the centre of gravity; in a wider one, which others will share,
+    /// anywhere within.
+    /// </summary>
     private static double ShiftCost(AssignableGroup group, AssignableSignal signal, bool alone)
     {
-        double place = alone
+        bool fits = alone && signal.Signal.SpanHertz <= (5 * group.RmsHertz) + 8;
+        double place = fits
             ? signal.Signal.CentroidPpm
             : Math.Clamp(group.ShiftPpm, signal.Signal.Ppm.Low, signal.Signal.Ppm.High);
         double z = (group.ShiftPpm - place) / Math.Max(0.04, group.StandardUncertaintyPpm);

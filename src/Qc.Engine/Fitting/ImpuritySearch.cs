@@ -1,4 +1,5 @@
 using System.Collections.Immutable;
+using Qc.Engine.Processing;
 using Qc.Engine.Values;
 
 namespace Qc.Engine.Fitting;
@@ -10,8 +11,9 @@ internal static class ImpuritySearch
     private const int MostAdded = 8;
 
     /// <summary>
-    /// Impurities all of whose signals find left-over signal at their place, most protons explained first; each region is
-    /// given to one impurity only. A single-line impurity is taken only where the region shows a single line there.
+    /// Impurities whose signals find left-over signal at their place, most signals first; each region is given to one
+    /// impurity only. A signal may hide under what the model draws already, but at least half of an impurity's signals must
+    /// show, and their areas must agree.
     /// </summary>
     public static ImmutableArray<KnownSubstance> Find(FitInput input, FitReading reading)
     {
@@ -23,7 +25,7 @@ internal static class ImpuritySearch
             .OrderByDescending(k => k.Signals.Length)
             .ThenBy(k => k.Name, StringComparer.Ordinal))
         {
-            if (found.Count >= MostAdded || Match(impurity, free, input.Spectrum.FrequencyMHz) is not { } matched)
+            if (found.Count >= MostAdded || Match(impurity, free, reading, input.Spectrum) is not { } matched)
             {
                 continue;
             }
@@ -46,34 +48,55 @@ internal static class ImpuritySearch
     ];
 
     private static (KnownSubstance Substance, List<LeftOverRegion> Regions)? Match(
-        KnownSubstance impurity, List<LeftOverRegion> free, double frequencyMHz)
+        KnownSubstance impurity, List<LeftOverRegion> free, FitReading reading, Spectrum spectrum)
     {
         var regions = new List<LeftOverRegion>();
+        var perProton = new List<double>();
         var signals = ImmutableArray.CreateBuilder<KnownSignal>();
         foreach (KnownSignal signal in impurity.Signals)
         {
             (LeftOverRegion Region, double Place)? best = null;
             foreach (LeftOverRegion region in free)
             {
-                if (Place(signal, region, frequencyMHz) is { } place
+                if (Place(signal, region, spectrum.FrequencyMHz) is { } place
                     && (best is null || Math.Abs(place - signal.ShiftPpm) < Math.Abs(best.Value.Place - signal.ShiftPpm)))
                 {
                     best = (region, place);
                 }
             }
 
-            if (best is null)
+            if (best is { } found)
+            {
+                regions.Add(found.Region);
+                perProton.Add(found.Region.Area / signal.Protons);
+                signals.Add(signal with { ShiftPpm = found.Place });
+            }
+            else if (IsHidden(signal, reading, spectrum))
+            {
+                signals.Add(signal);
+            }
+            else
             {
                 return null;
             }
-
-            regions.Add(best.Value.Region);
-            signals.Add(signal with { ShiftPpm = best.Value.Place });
         }
 
-        double[] perProton = [.. regions.Zip(impurity.Signals, (r, s) => r.Area / s.Protons)];
-        bool consistent = perProton.Max() < 3 * perProton.Min();
-        return consistent ? (impurity with { Signals = signals.ToImmutable() }, regions) : null;
+        bool enough = 2 * regions.Count >= impurity.Signals.Length && regions.Count > 0;
+        return enough && perProton.Max() < 3 * perProton.Min() ? (impurity with { Signals = signals.ToImmutable() }, regions) : null;
+    }
+
+    /// <summary>Whether the model draws so much at a signal's place that the signal would not show there.</summary>
+    private static bool IsHidden(KnownSignal signal, FitReading reading, Spectrum spectrum)
+    {
+        int first = Math.Max(0, (int)spectrum.IndexOf(signal.ShiftPpm + TolerancePpm));
+        int last = Math.Min(spectrum.Count - 1, (int)spectrum.IndexOf(signal.ShiftPpm - TolerancePpm));
+        double drawn = 0;
+        for (int i = first; i <= last; i++)
+        {
+            drawn += reading.Modelled[i] * spectrum.HzPerPoint;
+        }
+
+        return drawn > 0.3 * reading.AreaPerProton;
     }
 
     /// <summary>Centre of the region's maxima where it fits the signal's place and number of lines.</summary>

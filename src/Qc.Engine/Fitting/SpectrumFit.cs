@@ -125,20 +125,29 @@ public static class SpectrumFit
 
     /// <summary>
     /// Lower quartile of the widths of the strongest maxima that stand clear: overlap only ever widens, and the wiggles
-    /// beside strong lines are no lines.
+    /// beside strong lines are no lines. Of lines that run into each other the valley hides the half height, so they count
+    /// only where nothing stands clearer.
     /// </summary>
     internal static double TypicalWidth(ImmutableArray<MeasuredSignal> signals)
     {
-        double[] widths =
-        [
-            .. signals.SelectMany(s => s.Maxima)
-                .Where(m => m.Prominence > 0.5 * m.Height && m.WidthHertz > 0)
-                .OrderByDescending(m => m.Prominence)
-                .Take(StrongMaxima)
-                .Select(m => m.WidthHertz)
-                .Order(),
-        ];
-        return widths.Length == 0 ? 1 : Math.Clamp(widths[widths.Length / 4], 0.2, 10);
+        foreach (double clear in new[] { 0.9, 0.7, 0.5, 0 })
+        {
+            double[] widths =
+            [
+                .. signals.SelectMany(s => s.Maxima)
+                    .Where(m => m.Prominence >= clear * m.Height && m.WidthHertz > 0)
+                    .OrderByDescending(m => m.Prominence)
+                    .Take(StrongMaxima)
+                    .Select(m => m.WidthHertz)
+                    .Order(),
+            ];
+            if (widths.Length >= 2 || (clear == 0 && widths.Length > 0))
+            {
+                return Math.Clamp(widths[widths.Length / 4], 0.2, 10);
+            }
+        }
+
+        return 1;
     }
 
     /// <summary>

@@ -7,13 +7,13 @@ internal static class DigitalResolutionRule
 
     public static IEnumerable<Finding> Judge(JudgedSpectrum judged)
     {
-        double limit = judged.Criteria.Suitability.LineWidthsPerPoint * judged.Fit.WidthHertz;
+        double limit = judged.Criteria.Suitability.LineWidthsPerPoint * judged.Fit.MeasuredWidthHertz;
         double step = judged.Spectrum.HzPerPoint;
         bool passes = step <= limit;
         yield return new Finding(
             Id,
             judged.Name,
-            $"Points lie {Say.Coarse(step)} Hz apart; at most {Say.Coarse(limit)} Hz draws lines of {Say.Coarse(judged.Fit.WidthHertz)} Hz"
+            $"Points lie {Say.Coarse(step)} Hz apart; at most {Say.Coarse(limit)} Hz draws lines of {Say.Coarse(judged.Fit.MeasuredWidthHertz)} Hz"
             + (passes ? "." : ": acquire longer or fill with zeros."),
             passes ? Outcome.Pass : Outcome.Flag,
             step,

@@ -1,6 +1,6 @@
 namespace Qc.Engine.Verdicts.Rules;
 
-/// <summary>suitability.lineWidth: the fitted width at half height of the sharp lines; a wide one means a poor shim.</summary>
+/// <summary>suitability.lineWidth: the width at half height of the lines that stand clear; a wide one means a poor shim.</summary>
 internal static class LineWidthRule
 {
     public const string Id = "suitability.lineWidth";
@@ -11,7 +11,7 @@ internal static class LineWidthRule
         // A 300 MHz instrument has its protons a little below 300.
         bool lowField = judged.Spectrum.FrequencyMHz < LowFieldMHz - 5;
         double limit = lowField ? judged.Criteria.Suitability.LineWidthLowFieldHertz : judged.Criteria.Suitability.LineWidthHertz;
-        double width = judged.Fit.WidthHertz;
+        double width = judged.Fit.MeasuredWidthHertz;
         bool passes = width <= limit;
         yield return new Finding(
             Id,
