@@ -36,6 +36,7 @@ public sealed record QcOptions
         ApplicationConnection = configuration.GetConnectionString("Application") ?? FromFile(configuration["Qc:ApplicationConnectionFile"]),
         RabbitMq = configuration["Qc:RabbitMq"],
         Site = configuration["Qc:Site"] ?? (args.Contains(DemoSwitch, StringComparer.Ordinal) ? Qc.Service.Demo.DemoPlant.Site : "Qc site"),
+        LargestBodyBytes = configuration.GetValue<long?>("Qc:LargestBodyBytes") ?? 100L * 1024 * 1024,
     };
 
     /// <summary>Secrets may come from files, as container platforms mount them.</summary>
