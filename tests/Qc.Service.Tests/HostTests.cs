@@ -46,7 +46,7 @@ public sealed class HostTests(ServiceFixture service)
     [InlineData("GET", "/api/v1/nothing", 404, "not-found")]
     [InlineData("PUT", "/api/v1/products", 405, "method-not-allowed")]
     [InlineData("GET", "/api/v1/products/none", 404, "not-found")]
-    [InlineData("GET", "/api/v1/products/%00", 400, "malformed")]
+    [InlineData("GET", "/api/v1/lots?product=%00", 400, "malformed")]
     [InlineData("GET", "/api/v1/lots/none", 404, "not-found")]
     [InlineData("GET", "/api/v1/lots/none/certificate", 404, "not-found")]
     [InlineData("GET", "/api/v1/lots/none/spectra/x/trace", 404, "not-found")]

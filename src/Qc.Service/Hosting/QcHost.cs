@@ -132,10 +132,7 @@ public static class QcHost
         services.Configure<AuthenticationOptions>(o => (o.DefaultAuthenticateScheme, o.DefaultChallengeScheme, o.DefaultScheme) = (Scheme, Scheme, Scheme));
         services.AddAuthorization(Policies.Add);
         services.AddDataProtection().PersistKeysToFileSystem(new DirectoryInfo(Path.Combine(options.DataFolder, "keys", "sessions"))).SetApplicationName("qc");
-        services.ConfigureHttpJsonOptions(json =>
-        {
-            json.SerializerOptions.Converters.Add(new System.Text.Json.Serialization.JsonStringEnumConverter(System.Text.Json.JsonNamingPolicy.CamelCase, false));
-        });
+        services.ConfigureHttpJsonOptions(json => Json.Configure(json.SerializerOptions));
         services.AddExceptionHandler<UnexpectedErrors>().AddProblemDetails();
         services.AddOpenApi("v1", openApi => openApi.OpenApiVersion = Microsoft.OpenApi.OpenApiSpecVersion.OpenApi3_1);
         builder.AddQcPages();

@@ -42,7 +42,7 @@ public static class JsonBody
         }
         catch (JsonException e)
         {
-            string pointer = Pointer(e.Path);
+            string pointer = e.InnerException is JsonException ? "" : Pointer(e.Path); // A broken text has a place, but no field.
             string place = string.Create(CultureInfo.InvariantCulture, $"line {(e.LineNumber ?? 0) + 1}, byte {(e.BytePositionInLine ?? 0) + 1}");
             return pointer.Length > 0 && Reason(e) != NotJson
                 ? Problem.Invalid("invalid-field", "A field is wrong", $"The body is wrong at {pointer} ({place}).", new FieldError(pointer, Reason(e)))
@@ -66,6 +66,11 @@ public static class JsonBody
         {
             int from = e.Message.IndexOf("including", StringComparison.Ordinal);
             return from > 0 ? $"Required fields are missing: {e.Message[(from + 10)..].Trim()}" : "Required fields are missing.";
+        }
+
+        if (e.Message.Contains("doesn't allow setting null", StringComparison.Ordinal))
+        {
+            return "This field must not be null; leave it out or give a value.";
         }
 
         return e.Message.StartsWith("The JSON value could not be converted", StringComparison.Ordinal)

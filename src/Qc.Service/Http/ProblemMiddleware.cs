@@ -1,4 +1,5 @@
 using Microsoft.AspNetCore.Diagnostics;
+using Npgsql;
 
 namespace Qc.Service.Http;
 
@@ -11,6 +12,7 @@ internal sealed class UnexpectedErrors(ILogger<UnexpectedErrors> logger) : IExce
         {
             BadHttpRequestException { StatusCode: StatusCodes.Status413PayloadTooLarge } => Problem.TooLarge("The body is larger than this service accepts."),
             BadHttpRequestException e => Problem.Malformed("The request cannot be read.") with { Status = e.StatusCode },
+            _ when IsUnstorable(exception) => Problem.Malformed("The request holds a character that is no text, such as NUL."),
             InvalidDataException => Problem.TooLarge("A part of the form is larger than this service accepts, or the form is damaged."),
             _ => new Problem("/problems/unexpected", "Unexpected error", 500, $"Something went wrong here; it is logged under {context.TraceIdentifier}."),
         };
@@ -22,6 +24,11 @@ internal sealed class UnexpectedErrors(ILogger<UnexpectedErrors> logger) : IExce
         await problem.ToResult().ExecuteAsync(context);
         return true;
     }
+
+    /// <summary>Text that PostgreSQL does not take: the transaction that met it has kept nothing.</summary>
+    private static bool IsUnstorable(Exception exception) =>
+        (exception as PostgresException ?? exception.InnerException as PostgresException)?.SqlState
+            is PostgresErrorCodes.CharacterNotInRepertoire or PostgresErrorCodes.UntranslatableCharacter;
 }
 
 /// <summary>Gives bare status codes of the framework (404, 405, 415 ...) a body under /api.</summary>
@@ -37,6 +44,7 @@ internal static class StatusProblems
 
         Problem problem = http.Response.StatusCode switch
         {
+            400 => Problem.Malformed("The request cannot be read; a parameter is missing or has the wrong type."),
             401 => Problem.SignInNeeded(),
             403 => Problem.NotAllowed("This account or key may not do that."),
             404 => Problem.NotFound("address"),

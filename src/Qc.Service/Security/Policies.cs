@@ -6,8 +6,11 @@ namespace Qc.Service.Security;
 /// <summary>Who may do what: one place. A person needs one of the roles, a key the scope.</summary>
 public static class Policies
 {
-    /// <summary>Reads products, lots and certificates.</summary>
+    /// <summary>Reads products and specifications.</summary>
     public const string Read = "read";
+
+    /// <summary>Reads lots and certificates.</summary>
+    public const string ReadLots = "read-lots";
 
     /// <summary>Submits lots.</summary>
     public const string SubmitLots = "submit-lots";
@@ -33,7 +36,8 @@ public static class Policies
     /// <summary>Adds them.</summary>
     public static void Add(AuthorizationOptions options)
     {
-        Add(options, Read, [.. Roles.All], ["lots:read", "lots:write", "products:read", "products:write"]);
+        Add(options, Read, [.. Roles.All], ["products:read", "products:write"]);
+        Add(options, ReadLots, [.. Roles.All], ["lots:read"]);
         Add(options, SubmitLots, [Roles.Submitter], ["lots:write"]);
         Add(options, ManageProducts, [Roles.MethodOwner], ["products:write"]);
         Add(options, ApproveSpecifications, [Roles.QualityUnit], []);

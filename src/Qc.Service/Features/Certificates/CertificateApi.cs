@@ -10,7 +10,7 @@ namespace Qc.Service.Features.Certificates;
 internal static class CertificateApi
 {
     public static void MapCertificates(this IEndpointRouteBuilder api) =>
-        api.MapGet("/lots/{id}/certificate", ReadAsync).WithTags("Certificates").RequireAuthorization(Policies.Read)
+        api.MapGet("/lots/{id}/certificate", ReadAsync).WithTags("Certificates").RequireAuthorization(Policies.ReadLots)
             .Produces(200, contentType: "application/pdf").WithProblems(401, 403, 404, 409)
             .WithSummary("The signed PDF; Accept: application/json gives the same data");
 

@@ -18,15 +18,15 @@ internal static class LotApi
 {
     public static void MapLots(this IEndpointRouteBuilder api)
     {
-        RouteGroupBuilder group = api.MapGroup("/lots").WithTags("Lots").RequireAuthorization(Policies.Read);
-        group.MapPost("/", SubmitAsync).RequireAuthorization(Policies.SubmitLots)
+        RouteGroupBuilder group = api.MapGroup("/lots").WithTags("Lots").RequireAuthorization(Policies.ReadLots);
+        api.MapPost("/lots", SubmitAsync).WithTags("Lots").RequireAuthorization(Policies.SubmitLots)
             .Accepts<LotRequest>("application/json", "multipart/form-data").Produces<LotDto>(200).Produces<LotDto>(202)
             .WithProblems(400, 401, 403, 409, 413, 415, 422).WithSummary("Submits a lot; Prefer: wait=n answers it checked where it is done in time");
         group.MapGet("/", ListAsync).Produces<LotPage>().WithProblems(400, 401, 403).WithSummary("Lots, newest first");
         group.MapGet("/{id}", ReadAsync).Produces<LotDto>().WithProblems(401, 403, 404).WithSummary("A lot with everything found");
-        group.MapGet("/{id}/spectra/{number:int}/original", OriginalAsync).Produces(200, contentType: "application/octet-stream")
+        group.MapGet("/{id}/spectra/{n:int}/original", OriginalAsync).Produces(200, contentType: "application/octet-stream")
             .WithProblems(401, 403, 404).WithSummary("The bytes as received");
-        group.MapGet("/{id}/spectra/{number:int}/trace", TraceAsync).Produces<TraceDto>().WithProblems(400, 401, 403, 404)
+        group.MapGet("/{id}/spectra/{n:int}/trace", TraceAsync).Produces<TraceDto>().WithProblems(400, 401, 403, 404)
             .WithSummary("Measured, modelled and left-over curve for drawing");
     }
 
@@ -55,6 +55,7 @@ internal static class LotApi
 
         LotDto lot = (await lots.OneAsync(id, cancellation)).Value!;
         http.Response.Headers.Location = $"/api/v1/lots/{id}";
+        http.Response.Headers.ETag = DecideLot.Tag(lot.State, lot.Reviews.Length);
         bool done = waitSeconds > 0 && lot.State is not (LotState.Queued or LotState.Checking);
         return Results.Json(lot, Json.Options, statusCode: done ? 200 : 202);
     }
@@ -173,15 +174,15 @@ internal static class LotApi
         Outcome<LotDto> lot = await lots.OneAsync(id, cancellation);
         if (lot.Problem is null)
         {
-            response.Headers.ETag = DecideLot.Tag(lot.Value!.Reviews.Length);
+            response.Headers.ETag = DecideLot.Tag(lot.Value!.State, lot.Value.Reviews.Length);
         }
 
         return lot.ToResult(Results.Ok);
     }
 
-    private static async Task<IResult> OriginalAsync(string id, int number, QcDbContext context, CancellationToken cancellation)
+    private static async Task<IResult> OriginalAsync(string id, int n, QcDbContext context, CancellationToken cancellation)
     {
-        LotSpectrum? spectrum = await context.LotSpectra.AsNoTracking().SingleOrDefaultAsync(s => s.LotId == id && s.Number == number, cancellation);
+        LotSpectrum? spectrum = await context.LotSpectra.AsNoTracking().SingleOrDefaultAsync(s => s.LotId == id && s.Number == n, cancellation);
         if (spectrum is null)
         {
             return Problem.NotFound("spectrum").ToResult();
@@ -189,16 +190,16 @@ internal static class LotApi
 
         string extension = spectrum.Format switch { "nmrml" => "nmrML", "csv" => "csv", _ => "dx" };
         return Results.File(
-            spectrum.Bytes, "application/octet-stream", $"{id}-{number}.{extension}", entityTag: new EntityTagHeaderValue($"\"{spectrum.Sha256}\""));
+            spectrum.Bytes, "application/octet-stream", $"{id}-{n}.{extension}", entityTag: new EntityTagHeaderValue($"\"{spectrum.Sha256}\""));
     }
 
     private static async Task<IResult> TraceAsync(
-        string id, int number, HttpRequest request, QcDbContext context, CancellationToken cancellation, double? from = null, double? to = null, int points = 2000)
+        string id, int n, HttpRequest request, QcDbContext context, CancellationToken cancellation, double? from = null, double? to = null, int points = 2000)
     {
         Trace? trace = await (
             from t in context.Traces.AsNoTracking()
             join c in context.Computations on t.ComputationId equals c.Id
-            where c.LotId == id && t.SpectrumNumber == number
+            where c.LotId == id && t.SpectrumNumber == n
             orderby c.Number descending
             select t).FirstOrDefaultAsync(cancellation);
         if (trace is null)

@@ -55,8 +55,8 @@ public sealed class DecideLot(QcDbContext context, ReadLots lots, SigningDesk de
     private static readonly string[] Decisions = ["release", "reject", "remeasure"];
     private static readonly string[] Decidable = [LotState.Checked, LotState.Unreadable];
 
-    /// <summary>Entity tag of a lot for If-Match: the number of decisions on it.</summary>
-    public static string Tag(int reviews) => $"\"{reviews.ToString(CultureInfo.InvariantCulture)}\"";
+    /// <summary>Entity tag of a lot: what is answered of it changes with its state and with each decision only.</summary>
+    public static string Tag(string state, int reviews) => $"\"{state}-{reviews.ToString(CultureInfo.InvariantCulture)}\"";
 
     /// <summary>Decides.</summary>
     /// <param name="lotId">The lot.</param>
@@ -83,12 +83,12 @@ public sealed class DecideLot(QcDbContext context, ReadLots lots, SigningDesk de
         }
 
         int before = await context.Reviews.CountAsync(r => r.LotId == lotId, cancellation);
-        if (ifMatch is not null && ifMatch != "*" && ifMatch != Tag(before))
+        string state = await lots.StateAsync(lotId, cancellation);
+        if (ifMatch is not null && !ifMatch.Split(',', StringSplitOptions.TrimEntries).Any(tag => tag == "*" || tag == Tag(state, before)))
         {
-            return Problem.Changed("Another reviewer decided on this lot meanwhile; read it again.");
+            return Problem.Changed("The lot changed since it was read, perhaps by another reviewer; read it again.");
         }
 
-        string state = await lots.StateAsync(lotId, cancellation);
         Computation? computation = await context.Computations.AsNoTracking().Where(c => c.LotId == lotId).OrderByDescending(c => c.Number).FirstOrDefaultAsync(cancellation);
         if (computation is null || !Decidable.Contains(state))
         {
@@ -207,6 +207,14 @@ public sealed class DecideLot(QcDbContext context, ReadLots lots, SigningDesk de
         if (string.IsNullOrEmpty(request.Password))
         {
             errors.Add(new FieldError("/password", "Enter your password again: it is your signature."));
+        }
+
+        for (int i = 0; i < (request.Findings.IsDefault ? 0 : request.Findings.Length); i++)
+        {
+            if (request.Findings[i] is null)
+            {
+                errors.Add(new FieldError($"/findings/{i}", "A decision names criterion and subject."));
+            }
         }
 
         return errors.Count == 0 ? null : Problem.Invalid("invalid-field", "A field is wrong", errors[0].Detail, [.. errors]);
