@@ -23,6 +23,8 @@ public sealed class BadLotTests(ServiceFixture service)
         { "no number", Body("\"sample\": {\"massMg\": NaN}"), 400, "malformed", null },
         { "wrong type", Body("\"sample\": {\"massMg\": \"20\"}"), 422, "invalid-field", "/sample/massMg" },
         { "negative mass", Body("\"sample\": {\"massMg\": -1}"), 422, "invalid-field", "/sample/massMg" },
+        { "missing fields", """{"product": "PRODUCT", "spectra": [{"content": "1"}]}""", 422, "invalid-field", "/spectra/0/name" },
+        { "missing lot", """{"product": "PRODUCT", "spectra": []}""", 422, "invalid-field", "/lot" },
         { "unknown field", Body("\"colour\": \"blue\""), 422, "invalid-field", "/colour" },
         { "bad time", Body("\"sampledAt\": \"yesterday\""), 422, "invalid-field", "/sampledAt" },
         { "bad sequence", Body("\"sequence\": 0"), 422, "invalid-field", "/sequence" },

@@ -16,7 +16,7 @@ public sealed class ReviewTests(ServiceFixture service)
     [InlineData("""{"decision": "reject", "reason": " ", "password": "correct horse battery"}""", 422, "invalid-field", "/reason")]
     [InlineData("""{"decision": "fail", "reason": "Wrong isomer.", "password": "correct horse battery"}""", 422, "invalid-field", "/decision")]
     [InlineData("""{"decision": "reject", "reason": "x", "password": "correct horse battery", "findings": [null]}""", 422, "invalid-field", "/findings/0")]
-    [InlineData("""{"decision": "reject"}""", 422, "invalid-field", null)]
+    [InlineData("""{"decision": "reject"}""", 422, "invalid-field", "/reason")]
     [InlineData("""{"decision": """, 400, "malformed", null)]
     public async Task A_decision_that_is_not_complete_or_not_signed_is_refused(string body, int status, string type, string? pointer)
     {

@@ -42,7 +42,13 @@ public static class JsonBody
         }
         catch (JsonException e)
         {
-            string pointer = e.InnerException is JsonException ? "" : Pointer(e.Path); // A broken text has a place, but no field.
+            string pointer = Pointer(e.Path);
+            FieldError[] missing = [.. Missing(e).Select(name => new FieldError($"{pointer}/{name}", "This field is required."))];
+            if (missing.Length > 0)
+            {
+                return Problem.Invalid("invalid-field", "A field is missing", $"The body needs {missing[0].Pointer}.", missing);
+            }
+
             string place = string.Create(CultureInfo.InvariantCulture, $"line {(e.LineNumber ?? 0) + 1}, byte {(e.BytePositionInLine ?? 0) + 1}");
             return pointer.Length > 0 && Reason(e) != NotJson
                 ? Problem.Invalid("invalid-field", "A field is wrong", $"The body is wrong at {pointer} ({place}).", new FieldError(pointer, Reason(e)))
@@ -54,18 +60,21 @@ public static class JsonBody
         }
     }
 
+    /// <summary>Required members that are missing, as the reader's message quotes them: including: 'lot', 'spectra'.</summary>
+    private static IEnumerable<string> Missing(JsonException e)
+    {
+        int from = e.Message.IndexOf("including", StringComparison.Ordinal);
+        return from < 0 || !e.Message.Contains("missing required properties", StringComparison.Ordinal)
+            ? []
+            : e.Message[from..].Split('\'').Where((_, i) => i % 2 == 1);
+    }
+
     /// <summary>The reader's own words, without the type names and positions that it appends.</summary>
     private static string Reason(JsonException e)
     {
         if (e.Message.Contains("could not be mapped to any .NET member", StringComparison.Ordinal))
         {
             return "This field is not known; leave it out.";
-        }
-
-        if (e.Message.Contains("missing required properties", StringComparison.Ordinal))
-        {
-            int from = e.Message.IndexOf("including", StringComparison.Ordinal);
-            return from > 0 ? $"Required fields are missing: {e.Message[(from + 10)..].Trim()}" : "Required fields are missing.";
         }
 
         if (e.Message.Contains("doesn't allow setting null", StringComparison.Ordinal))

@@ -3,7 +3,9 @@ using System.Text;
 using Microsoft.EntityFrameworkCore;
 using Qc.Records;
 using Qc.Records.Lots;
+using Qc.Records.Products;
 using Qc.Records.Reviews;
+using Qc.Service.Features.Specifications;
 using Qc.Service.Http;
 
 namespace Qc.Service.Features.Lots;
@@ -43,8 +45,23 @@ public sealed class ReadLots(QcDbContext context)
         context.LotEvents.AsNoTracking().Where(e => e.LotId == id).OrderByDescending(e => e.Id).Select(e => e.State).FirstAsync(cancellation);
 
     /// <summary>Whether a lot is still being worked on.</summary>
-    public async Task<bool> IsPendingAsync(string id, CancellationToken cancellation) =>
-        await StateAsync(id, cancellation) is LotState.Queued or LotState.Checking;
+    public async Task<bool> IsPendingAsync(string id, CancellationToken cancellation)
+    {
+        string state = await StateAsync(id, cancellation);
+        return state is LotState.Queued or LotState.Checking || (state == LotState.Checked && await ReleasesItselfAsync(id, cancellation));
+    }
+
+    /// <summary>A passed lot whose specification lets it go without a reviewer is "checked" for a moment only.</summary>
+    private async Task<bool> ReleasesItselfAsync(string id, CancellationToken cancellation)
+    {
+        SpecificationVersion? specification = await (
+            from l in context.Lots.AsNoTracking()
+            join c in context.Computations on l.Id equals c.LotId
+            join s in context.SpecificationVersions on l.SpecificationId equals s.Id
+            where l.Id == id && c.Verdict == "pass"
+            select s).FirstOrDefaultAsync(cancellation);
+        return specification is not null && SpecificationQueries.Criteria(specification).ReleaseByException;
+    }
 
     /// <summary>Decisions on a lot with their signatures, oldest first.</summary>
     public async Task<IReadOnlyList<(Review Review, Signature Signature)>> ReviewsAsync(string id, CancellationToken cancellation) =>

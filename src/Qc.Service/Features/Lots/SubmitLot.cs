@@ -114,19 +114,19 @@ public sealed class SubmitLot(QcDbContext context, IDbContextOutbox<QcDbContext>
             await context.SaveWithAuditAsync([Audit(submission, lot, product, specification, spectra.Value)], cancellation);
             await outbox.SaveChangesAndFlushMessagesAsync(cancellation);
         }
-        catch (DbUpdateException e) when (e.InnerException is PostgresException { SqlState: PostgresErrorCodes.UniqueViolation } unique)
+        catch (DbUpdateException e) when (e.InnerException is PostgresException { SqlState: PostgresErrorCodes.UniqueViolation })
         {
-            return await ConflictAsync(submission, unique, cancellation);
+            return await ConflictAsync(submission, cancellation);
         }
 
         return new Accepted(lot.Id, false);
     }
 
-    private async Task<Outcome<Accepted>> ConflictAsync(Submission submission, PostgresException unique, CancellationToken cancellation)
+    private async Task<Outcome<Accepted>> ConflictAsync(Submission submission, CancellationToken cancellation)
     {
         await context.Database.RollbackTransactionAsync(cancellation);
         context.ChangeTracker.Clear();
-        if (unique.TableName == "idempotency_records" && await RepeatedAsync(submission, cancellation) is { } repeated)
+        if (await RepeatedAsync(submission, cancellation) is { } repeated)
         {
             return repeated;
         }
