@@ -11,6 +11,12 @@ export interface Plot {
 /** Share of the canvas height kept for the left-over curve, which has a band and a zero line of its own. */
 const LeftOverBand = 0.22;
 
+/** Distances between ticks in ppm that can be written without rounding. */
+const Steps = [0.001, 0.002, 0.005, 0.01, 0.02, 0.05, 0.1, 0.2, 0.5, 1, 2, 5, 10];
+
+/** A shift with its minus sign as printed, and no negative zero. */
+const signed = (value: number, decimals: number): string => value.toFixed(decimals).replace(/^-(?=0\.?0*$)/, "").replace("-", "−");
+
 /** The spectrum of a lot: measured, modelled and left-over curve on one zoomable canvas. */
 export function mountPlot(figure: HTMLElement): Plot {
   const lot = figure.dataset["lot"]!;
@@ -45,7 +51,7 @@ export function mountPlot(figure: HTMLElement): Plot {
       }
       if (!part) view = whole = { low: first, high: last };
       const data: uPlot.AlignedData = [
-        ppm, trace.measured.slice().reverse(), trace.modelled.slice().reverse(), trace.leftOver.slice().reverse(),
+        ppm, trace.modelled.slice().reverse(), trace.measured.slice().reverse(), trace.leftOver.slice().reverse(),
       ];
       if (chart) chart.setData(data, false);
       else chart = create(data);
@@ -75,15 +81,16 @@ export function mountPlot(figure: HTMLElement): Plot {
       axes: [
         {
           stroke: () => colour("--ink"), ticks: { stroke: () => colour("--ink"), width: 1, size: 5 }, grid: { show: false },
-          font: `13px ${colour("--font")}`, size: 36, space: 60,
-          values: (_, splits, __, ___, step) => splits.map((v) => v.toFixed(Math.max(0, Math.min(3, Math.ceil(-Math.log10(step)))))),
+          font: `13px ${colour("--font")}`, size: 36, space: 60, incrs: [...Steps],
+          values: (_, splits, __, ___, step) => splits.map((v) => signed(v, Math.max(0, Math.ceil(-Math.log10(step) - 1e-9)))),
         },
         { show: false },
       ],
       series: [
         {},
-        { label: "measured", scale: "y", stroke: () => colour("--ink"), width: 1.25, points: { show: false } },
-        { label: "modelled", scale: "y", stroke: () => colour("--accent"), width: 1.75, dash: [7, 4], points: { show: false } },
+        // The model lies as broad dashes under the measured line: where they agree both are seen, where not the dashes stand alone.
+        { label: "modelled", scale: "y", stroke: () => colour("--model"), width: 3.5, dash: [9, 6], points: { show: false } },
+        { label: "measured", scale: "y", stroke: () => colour("--ink"), width: 1, points: { show: false } },
         { label: "left over", scale: "rest", stroke: () => colour("--soft"), width: 1, points: { show: false } },
       ],
       hooks: { drawClear: [shade], setSelect: [dragged], setCursor: [readOut] },
@@ -160,7 +167,7 @@ export function mountPlot(figure: HTMLElement): Plot {
   function readOut(u: uPlot): void {
     if (!pointer) return;
     const left = u.cursor.left ?? -1;
-    pointer.textContent = left < 0 ? "" : `${u.posToVal(left, "x").toFixed(3)} ppm`;
+    pointer.textContent = left < 0 ? "" : `${signed(u.posToVal(left, "x"), 3)} ppm`;
   }
 
   function draw(): void {
@@ -173,7 +180,7 @@ export function mountPlot(figure: HTMLElement): Plot {
   }
 
   function describe(): string {
-    const shown = `Shown: ${view.high.toFixed(2)} to ${view.low.toFixed(2)} ppm`;
+    const shown = `Shown: ${signed(view.high, 2)} to ${signed(view.low, 2)} ppm`;
     const scaled = height > 1.01 || height < 0.99 ? `, height × ${height.toPrecision(2)}` : "";
     return selectedName ? `${shown}${scaled}. Marked: ${selectedName}.` : `${shown}${scaled}.`;
   }

@@ -10,10 +10,11 @@ export interface Structure {
 /** Puts the drawing into the page (inline, so that it takes the ink of the page). */
 export async function mountStructure(holder: HTMLElement): Promise<Structure | null> {
   try {
-    const parsed = new DOMParser().parseFromString(await api.drawing(holder.dataset["product"]!), "image/svg+xml");
+    const drawing = (await api.drawing(holder.dataset["product"]!)).replace(/ style=(?=["'])/g, " data-style=");
+    const parsed = new DOMParser().parseFromString(drawing, "image/svg+xml");
+    if (parsed.documentElement.namespaceURI !== Svg) return null;
+    stylesAsAttributes(parsed.documentElement);
     const svg = document.importNode(parsed.documentElement, true) as unknown as SVGSVGElement;
-    if (svg.namespaceURI !== Svg) return null;
-    stylesAsProperties(svg);
     svg.setAttribute("role", "img");
     svg.setAttribute("aria-label", holder.dataset["label"] ?? "Structure");
     holder.replaceChildren(svg);
@@ -24,14 +25,14 @@ export async function mountStructure(holder: HTMLElement): Promise<Structure | n
   }
 }
 
-/** The content security policy refuses style attributes; the same declarations set one by one are allowed. */
-function stylesAsProperties(svg: SVGSVGElement): void {
-  for (const element of svg.querySelectorAll<SVGElement>("[style]")) {
-    const text = element.getAttribute("style") ?? "";
-    element.removeAttribute("style");
+/** The content security policy refuses style attributes even while parsing; as SVG attributes the same declarations are allowed. */
+function stylesAsAttributes(svg: Element): void {
+  for (const element of svg.querySelectorAll("[data-style]")) {
+    const text = element.getAttribute("data-style") ?? "";
+    element.removeAttribute("data-style");
     for (const declaration of text.split(";")) {
       const colon = declaration.indexOf(":");
-      if (colon > 0) element.style.setProperty(declaration.slice(0, colon).trim(), declaration.slice(colon + 1).trim());
+      if (colon > 0) element.setAttribute(declaration.slice(0, colon).trim(), declaration.slice(colon + 1).trim());
     }
   }
 }

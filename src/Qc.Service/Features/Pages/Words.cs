@@ -19,8 +19,12 @@ public static class Words
         "Proton NMR does not see inorganic salts, metals, water below its detection limit or substances under another signal. "
         + "A verdict supports, and does not replace, the decision of the quality unit and of licensed persons.";
 
-    /// <summary>A number with so many decimals.</summary>
-    public static string Number(double value, int decimals) => value.ToString($"F{decimals}", CultureInfo.InvariantCulture);
+    /// <summary>A number with so many decimals, its minus sign as printed; what rounds to zero has none.</summary>
+    public static string Number(double value, int decimals)
+    {
+        string digits = Math.Abs(value).ToString($"F{decimals}", CultureInfo.InvariantCulture);
+        return value < 0 && digits.Any(c => c is >= '1' and <= '9') ? $"−{digits}" : digits;
+    }
 
     /// <summary>A number with the decimals its unit deserves, and the unit.</summary>
     public static string Measure(double value, string unit) => $"{Figure(value, unit)} {unit}".TrimEnd();
@@ -30,7 +34,8 @@ public static class Words
     {
         "ppm" => Number(value, 3),
         "Hz" or "H" or "mol %" or "% (m/m)" => Number(value, 2),
-        _ => value.ToString("G4", CultureInfo.InvariantCulture),
+        _ when Math.Abs(value) >= 1000 => Number(value, 0),
+        _ => value.ToString("0.####", CultureInfo.InvariantCulture),
     };
 
     /// <summary>What was observed, as "4.093 ppm (u = 0.002)"; empty where nothing was.</summary>
