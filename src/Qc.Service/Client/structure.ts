@@ -14,6 +14,10 @@ export async function mountStructure(holder: HTMLElement): Promise<Structure | n
     const parsed = new DOMParser().parseFromString(drawing, "image/svg+xml");
     if (parsed.documentElement.namespaceURI !== Svg) return null;
     stylesAsAttributes(parsed.documentElement);
+    // Atoms are told by their letters; in colours of their own, blue on a dark page could not be read.
+    for (const name of ["fill", "stroke"]) {
+      for (const element of parsed.querySelectorAll(`[${name}]:not([${name}=none])`)) element.setAttribute(name, "currentColor");
+    }
     const svg = document.importNode(parsed.documentElement, true) as unknown as SVGSVGElement;
     svg.setAttribute("role", "img");
     svg.setAttribute("aria-label", holder.dataset["label"] ?? "Structure");
@@ -25,14 +29,20 @@ export async function mountStructure(holder: HTMLElement): Promise<Structure | n
   }
 }
 
-/** The content security policy refuses style attributes even while parsing; as SVG attributes the same declarations are allowed. */
+/**
+ * The content security policy refuses style attributes even while parsing; as SVG attributes the same declarations are
+ * allowed.
+ */
 function stylesAsAttributes(svg: Element): void {
   for (const element of svg.querySelectorAll("[data-style]")) {
     const text = element.getAttribute("data-style") ?? "";
     element.removeAttribute("data-style");
     for (const declaration of text.split(";")) {
       const colon = declaration.indexOf(":");
-      if (colon > 0) element.setAttribute(declaration.slice(0, colon).trim(), declaration.slice(colon + 1).trim());
+      if (colon < 0) continue;
+      const name = declaration.slice(0, colon).trim();
+      const value = declaration.slice(colon + 1).trim();
+      element.setAttribute(name, value);
     }
   }
 }

@@ -38,6 +38,13 @@ public static class Words
         _ => value.ToString("0.####", CultureInfo.InvariantCulture),
     };
 
+    /// <summary>"99.41 ± 0.60": the uncertainty with two significant digits, the value with as many decimals.</summary>
+    public static string WithUncertainty(double value, double expanded)
+    {
+        int decimals = expanded > 0 ? Math.Clamp(1 - (int)Math.Floor(Math.Log10(expanded)), 0, 8) : 2;
+        return $"{Number(value, decimals)} ± {Number(expanded, decimals)}";
+    }
+
     /// <summary>What was observed, as "4.093 ppm (u = 0.002)"; empty where nothing was.</summary>
     public static string Observed(Finding finding) => finding.Observed is { } observed
         ? Measure(observed, finding.Unit) + (finding.StandardUncertainty is { } u ? $" (u = {Figure(u, finding.Unit)})" : "")
