@@ -39,7 +39,11 @@ public static class QcHost
     public static async Task RunAsync(string[] args)
     {
         // A bare switch would take the next argument as its value.
-        WebApplicationBuilder builder = WebApplication.CreateBuilder([.. args.Where(a => a != QcOptions.DemoSwitch)]);
+        WebApplicationBuilder builder = WebApplication.CreateBuilder(new WebApplicationOptions
+        {
+            Args = [.. args.Where(a => a != QcOptions.DemoSwitch)],
+            WebRootPath = WebRoot.Find(),
+        });
         QcOptions options = QcOptions.From(builder.Configuration, args, builder.Environment.ContentRootPath);
         Directory.CreateDirectory(options.DataFolder);
         AddLogging(builder, options);
