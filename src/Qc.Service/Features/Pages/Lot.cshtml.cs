@@ -65,7 +65,7 @@ public sealed class LotModel(LotQueries queries) : PageModel
 
     private static string Family(Finding finding) => finding.Criterion.Split('.')[0] switch
     {
-        "suitability" => "Measurement",
+        "suitability" or "reading" => "Measurement",
         "identity" => "Identity",
         _ => "Amounts",
     };

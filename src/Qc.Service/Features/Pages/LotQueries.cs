@@ -5,6 +5,7 @@ using Qc.Records;
 using Qc.Records.Lots;
 using Qc.Records.Products;
 using Qc.Records.Reviews;
+using Qc.Service.Features.Reviews;
 using Qc.Service.Http;
 
 namespace Qc.Service.Features.Pages;
@@ -37,8 +38,8 @@ public sealed record LotView(
     IReadOnlyList<SpectrumRow> Spectra, IReadOnlyList<LotEvent> Events, IReadOnlyList<(Review Review, Signature Signature)> Reviews,
     string? CertificateNumber)
 {
-    /// <summary>Entity tag of the lot as the API understands it: the number of decisions.</summary>
-    public string Tag => string.Create(System.Globalization.CultureInfo.InvariantCulture, $"\"{Reviews.Count}\"");
+    /// <summary>Entity tag of the lot as the API gives it.</summary>
+    public string Tag => DecideLot.Tag(State, Reviews.Count);
 }
 
 /// <summary>Reads lots for the pages.</summary>
