@@ -11,6 +11,7 @@ using Qc.Records.PrivateServer;
 using Qc.Records.Schema;
 using Qc.Service.Demo;
 using Qc.Service.Features.Audit;
+using Qc.Service.Features.Callbacks;
 using Qc.Service.Features.Certificates;
 using Qc.Service.Features.Lots;
 using Qc.Service.Features.Pages;
@@ -101,7 +102,7 @@ public static class QcHost
         services.AddSingleton(provider => SiteCertificate.Load(
             options.DataFolder, options.Site, builder.Configuration, provider.GetRequiredService<TimeProvider>().GetUtcNow(),
             provider.GetRequiredService<ILogger<SiteCertificate>>()));
-        services.AddSingleton<LotWaiters>().AddSingleton<QcMetrics>().AddSingleton<Readiness>();
+        services.AddSingleton<CallbackSender>().AddSingleton<LotWaiters>().AddSingleton<QcMetrics>().AddSingleton<Readiness>();
         services.AddDbContextWithWolverineIntegration<QcDbContext>(b => QcDbContext.Configure(b, application), "queue");
         services.AddScoped<CreateProduct>().AddScoped<ReadProduct>().AddScoped<DraftSpecification>().AddScoped<ApproveSpecification>()
             .AddScoped<SubmitLot>().AddScoped<ReadLots>().AddScoped<LotChecker>().AddScoped<DecideLot>().AddScoped<IssueCertificate>()
@@ -156,6 +157,9 @@ public static class QcHost
         {
             wolverine.PersistMessagesWithPostgresql(application, "queue");
             wolverine.UseEntityFrameworkCoreTransactions();
+
+            // One process takes up at once what it left at a crash; several have to agree on who does.
+            wolverine.Durability.Mode = options.RabbitMq is null ? DurabilityMode.Solo : DurabilityMode.Balanced;
             wolverine.Policies.UseDurableLocalQueues();
             wolverine.OnException<Exception>().RetryWithCooldown(TimeSpan.FromSeconds(1), TimeSpan.FromSeconds(5), TimeSpan.FromSeconds(30));
             if (options.RabbitMq is { } address)

@@ -27,6 +27,9 @@ public sealed record QcOptions
     /// <summary>Largest request body in bytes.</summary>
     public long LargestBodyBytes { get; init; } = 100L * 1024 * 1024;
 
+    /// <summary>Whether callbacks may go to this host itself; so where it is a laptop with its private database.</summary>
+    public bool CallbacksToThisHost { get; init; }
+
     /// <summary>Reads them.</summary>
     public static QcOptions From(IConfiguration configuration, string[] args, string contentRoot) => new()
     {
@@ -36,6 +39,7 @@ public sealed record QcOptions
         ApplicationConnection = configuration.GetConnectionString("Application") ?? FromFile(configuration["Qc:ApplicationConnectionFile"]),
         RabbitMq = configuration["Qc:RabbitMq"],
         Site = configuration["Qc:Site"] ?? (args.Contains(DemoSwitch, StringComparer.Ordinal) ? Qc.Service.Demo.DemoPlant.Site : "Qc site"),
+        CallbacksToThisHost = configuration.GetValue<bool?>("Qc:CallbacksToThisHost") ?? configuration.GetConnectionString("Application") is null,
         LargestBodyBytes = configuration.GetValue<long?>("Qc:LargestBodyBytes") ?? 100L * 1024 * 1024,
     };
 

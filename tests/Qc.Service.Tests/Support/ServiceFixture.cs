@@ -31,6 +31,7 @@ public sealed class ServiceFixture : IAsyncLifetime
     private PrivatePostgres? _database;
     private Process? _service;
     private Uri? _address;
+    private string _passwordFile = "";
 
     /// <summary>A key with every scope of a LIMS.</summary>
     public HttpClient Lims { get; private set; } = null!;
@@ -42,9 +43,9 @@ public sealed class ServiceFixture : IAsyncLifetime
     {
         _database = await PrivatePostgres.StartAsync(_folder);
         Directory.CreateDirectory(_folder);
-        string passwordFile = Path.Combine(_folder, "admin-password");
-        await File.WriteAllTextAsync(passwordFile, Password + "\n");
-        StartService(passwordFile);
+        _passwordFile = Path.Combine(_folder, "admin-password");
+        await File.WriteAllTextAsync(_passwordFile, Password + "\n");
+        StartService();
         await WaitUntilReadyAsync();
         await AddPeopleAsync();
         Lims = await KeyAsync("lots:write", "lots:read", "products:read");
@@ -57,6 +58,18 @@ public sealed class ServiceFixture : IAsyncLifetime
             client.Dispose();
         }
 
+        await KillAsync();
+        if (_database is not null)
+        {
+            await _database.DisposeAsync();
+        }
+
+        Directory.Delete(_folder, recursive: true);
+    }
+
+    /// <summary>Kills the service without notice.</summary>
+    public async Task KillAsync()
+    {
         if (_service is { HasExited: false })
         {
             _service.Kill();
@@ -64,12 +77,14 @@ public sealed class ServiceFixture : IAsyncLifetime
         }
 
         _service?.Dispose();
-        if (_database is not null)
-        {
-            await _database.DisposeAsync();
-        }
+        _service = null;
+    }
 
-        Directory.Delete(_folder, recursive: true);
+    /// <summary>Starts the service again at the same address on the same data.</summary>
+    public async Task StartAgainAsync()
+    {
+        StartService();
+        await WaitUntilReadyAsync();
     }
 
     /// <summary>A client of nobody.</summary>
@@ -132,12 +147,9 @@ public sealed class ServiceFixture : IAsyncLifetime
         return await command.ExecuteScalarAsync();
     }
 
-    private void StartService(string passwordFile)
+    private void StartService()
     {
-        using var listener = new TcpListener(IPAddress.Loopback, 0);
-        listener.Start();
-        _address = new Uri($"http://127.0.0.1:{((IPEndPoint)listener.LocalEndpoint).Port}");
-        listener.Stop();
+        _address ??= FreeAddress();
         var start = new ProcessStartInfo("dotnet", [Path.Combine(AppContext.BaseDirectory, "Qc.Service.dll"), "--data", _folder, "--urls", _address.ToString()])
         {
             RedirectStandardOutput = true,
@@ -146,7 +158,7 @@ public sealed class ServiceFixture : IAsyncLifetime
         start.Environment["ConnectionStrings__Owner"] = _database!.OwnerConnectionString;
         start.Environment["ConnectionStrings__Application"] = _database.ApplicationConnectionString;
         start.Environment["QC_ADMIN_USER"] = Administrator;
-        start.Environment["QC_ADMIN_PASSWORD_FILE"] = passwordFile;
+        start.Environment["QC_ADMIN_PASSWORD_FILE"] = _passwordFile;
         start.Environment["Qc__LargestBodyBytes"] = LargestBodyBytes.ToString(System.Globalization.CultureInfo.InvariantCulture);
         start.Environment["Qc__CallbacksToThisHost"] = "true";
         _service = Process.Start(start)!;
@@ -154,6 +166,13 @@ public sealed class ServiceFixture : IAsyncLifetime
         _service.ErrorDataReceived += Keep;
         _service.BeginOutputReadLine();
         _service.BeginErrorReadLine();
+    }
+
+    private static Uri FreeAddress()
+    {
+        using var listener = new TcpListener(IPAddress.Loopback, 0);
+        listener.Start();
+        return new Uri($"http://127.0.0.1:{((IPEndPoint)listener.LocalEndpoint).Port}");
     }
 
     private void Keep(object sender, DataReceivedEventArgs line) => Log += line.Data + "\n";

@@ -14,11 +14,13 @@ using Qc.Records.Lots;
 using Qc.Records.Products;
 using Qc.Records.Reviews;
 using Qc.Service.Features.Audit;
+using Qc.Service.Features.Callbacks;
 using Qc.Service.Features.Lots;
 using Qc.Service.Features.Reviews;
 using Qc.Service.Features.Specifications;
 using Qc.Service.Hosting;
 using Qc.Service.Http;
+using Wolverine.EntityFrameworkCore;
 
 namespace Qc.Service.Features.Certificates;
 
@@ -26,7 +28,8 @@ namespace Qc.Service.Features.Certificates;
 /// Releases a lot and issues its certificate. The intent is recorded before signing and the outcome after, so that a crash
 /// between the two leaves a trace and the next attempt takes the same number.
 /// </summary>
-public sealed class IssueCertificate(QcDbContext context, SignedHeads heads, SiteCertificate site, QcOptions options)
+public sealed class IssueCertificate(
+    QcDbContext context, IDbContextOutbox<QcDbContext> outbox, SignedHeads heads, SiteCertificate site, QcOptions options)
 {
     private const long SeriesLock = 0x5143_4345; // "QCCE": numbers are taken one at a time, so the series has no gap.
 
@@ -91,7 +94,8 @@ public sealed class IssueCertificate(QcDbContext context, SignedHeads heads, Sit
                 }),
             ],
             cancellation);
-        await transaction.CommitAsync(cancellation);
+        await ReportOutcome.PublishAsync(outbox, facts.Lot);
+        await outbox.SaveChangesAndFlushMessagesAsync(cancellation); // Commits.
         return null;
     }
 

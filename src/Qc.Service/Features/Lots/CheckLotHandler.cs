@@ -12,16 +12,24 @@ using Qc.Records;
 using Qc.Records.Audit;
 using Qc.Records.Lots;
 using Qc.Records.Products;
+using Qc.Service.Features.Callbacks;
 using Qc.Service.Features.Certificates;
 using Qc.Service.Features.Specifications;
 using Qc.Service.Hosting;
 using Qc.Service.Http;
+using Wolverine.EntityFrameworkCore;
 
 namespace Qc.Service.Features.Lots;
 
 /// <summary>Checks a lot. Run twice for the same lot, the second run finds the computation and does nothing.</summary>
 public sealed class LotChecker(
-    QcDbContext context, IStructureReader structures, LotWaiters waiters, IssueCertificate certificates, QcMetrics metrics, ILogger<LotChecker> logger)
+    QcDbContext context,
+    IDbContextOutbox<QcDbContext> outbox,
+    IStructureReader structures,
+    LotWaiters waiters,
+    IssueCertificate certificates,
+    QcMetrics metrics,
+    ILogger<LotChecker> logger)
 {
     private const string Service = "service";
 
@@ -30,12 +38,18 @@ public sealed class LotChecker(
     {
         if (!await context.Computations.AnyAsync(c => c.LotId == lotId, cancellation))
         {
+            await BeginAsync(lotId, cancellation);
             await CheckAsync(lotId, cancellation);
         }
 
-        waiters.Done(lotId);
         await certificates.ReleaseByExceptionAsync(lotId, cancellation);
         waiters.Done(lotId);
+    }
+
+    private async Task BeginAsync(string lotId, CancellationToken cancellation)
+    {
+        context.LotEvents.Add(new LotEvent { LotId = lotId, State = LotState.Checking, At = await context.DatabaseTimeAsync(cancellation), By = Service });
+        await context.SaveChangesAsync(cancellation);
     }
 
     private async Task CheckAsync(string lotId, CancellationToken cancellation)
@@ -159,7 +173,8 @@ public sealed class LotChecker(
                 }),
             ],
             cancellation);
-        await transaction.CommitAsync(cancellation);
+        await ReportOutcome.PublishAsync(outbox, lot);
+        await outbox.SaveChangesAndFlushMessagesAsync(cancellation); // Commits.
     }
 
     /// <summary>Little-endian 32-bit floats, as the column's doc says.</summary>

@@ -10,10 +10,12 @@ using Qc.Records;
 using Qc.Records.Audit;
 using Qc.Records.Lots;
 using Qc.Records.Reviews;
+using Qc.Service.Features.Callbacks;
 using Qc.Service.Features.Certificates;
 using Qc.Service.Features.Lots;
 using Qc.Service.Features.People;
 using Qc.Service.Http;
+using Wolverine.EntityFrameworkCore;
 
 namespace Qc.Service.Features.Reviews;
 
@@ -50,7 +52,8 @@ public sealed record FindingDecision
 }
 
 /// <summary>Records a person's signed decision on a lot.</summary>
-public sealed class DecideLot(QcDbContext context, ReadLots lots, SigningDesk desk, IssueCertificate certificates)
+public sealed class DecideLot(
+    QcDbContext context, IDbContextOutbox<QcDbContext> outbox, ReadLots lots, SigningDesk desk, IssueCertificate certificates)
 {
     private static readonly string[] Decisions = ["release", "reject", "remeasure"];
     private static readonly string[] Decidable = [LotState.Checked, LotState.Unreadable];
@@ -175,7 +178,8 @@ public sealed class DecideLot(QcDbContext context, ReadLots lots, SigningDesk de
                         }),
                     ],
                     cancellation);
-                await transaction.CommitAsync(cancellation);
+                await ReportOutcome.PublishAsync(outbox, lot);
+                await outbox.SaveChangesAndFlushMessagesAsync(cancellation); // Commits.
             }
             catch (DbUpdateException e) when (e.InnerException is PostgresException { SqlState: PostgresErrorCodes.UniqueViolation })
             {

@@ -46,6 +46,11 @@ internal static class SessionApi
         SignInResult result = person is { IsActive: true }
             ? await signIn.PasswordSignInAsync(person, session.Password, isPersistent: false, lockoutOnFailure: true)
             : SignInResult.Failed;
+        if (person is null)
+        {
+            _ = people.PasswordHasher.HashPassword(new Person { PrintedName = "" }, session.Password); // An unknown name must not answer sooner.
+        }
+
         if (!result.Succeeded)
         {
             // The same words for an unknown name, a wrong password and a locked account: they reveal nothing.
