@@ -15,6 +15,7 @@ public static class SpectrumFit
     private const int Starts = 3;
     private const double NormalGapHertz = 22;
     private const int StrongMaxima = 16;
+    private const double StrongInNoise = 30;
 
     /// <summary>Stages by which the best start is chosen: only places and amounts move.</summary>
     private static readonly FitStage[] CoarseStages = [new(15, 0.10, 8, true), new(6, 0.10, 8, true)];
@@ -27,7 +28,7 @@ public static class SpectrumFit
     {
         Spectrum spectrum = input.Spectrum;
         ImmutableArray<MeasuredSignal> signals = MeasuredSignals.Find(spectrum, GapHertz(input.Product));
-        double width = TypicalWidth(signals);
+        double width = TypicalWidth(signals, spectrum.NoiseStandardDeviation);
         var claims = ForeignClaims.Of(input, signals);
         ImmutableArray<StartingPlaces> starts = StartingPlaces.Candidates(input, signals, claims, Starts);
         ImmutableArray<Interval> stretches = Stretches(input, signals, claims, starts, width);
@@ -126,22 +127,22 @@ public static class SpectrumFit
     /// <summary>
     /// Lower quartile of the widths of the strongest maxima that stand clear: overlap only ever widens, and the wiggles
     /// beside strong lines are no lines. Of lines that run into each other the valley hides the half height, so they count
-    /// only where nothing stands clearer.
+    /// only where nothing stands clearer; spikes of the noise, which are as narrow as its points, only where there is nothing else.
     /// </summary>
-    internal static double TypicalWidth(ImmutableArray<MeasuredSignal> signals)
+    internal static double TypicalWidth(ImmutableArray<MeasuredSignal> signals, double noise)
     {
-        foreach (double clear in new[] { 0.9, 0.7, 0.5, 0 })
+        foreach ((double clear, double strong) in new[] { (0.9, StrongInNoise), (0.7, StrongInNoise), (0.5, StrongInNoise), (0, StrongInNoise), (0, 0) })
         {
             double[] widths =
             [
                 .. signals.SelectMany(s => s.Maxima)
-                    .Where(m => m.Prominence >= clear * m.Height && m.WidthHertz > 0)
+                    .Where(m => m.Prominence >= clear * m.Height && m.Prominence >= strong * noise && m.WidthHertz > 0)
                     .OrderByDescending(m => m.Prominence)
                     .Take(StrongMaxima)
                     .Select(m => m.WidthHertz)
                     .Order(),
             ];
-            if (widths.Length >= 2 || (clear == 0 && widths.Length > 0))
+            if (widths.Length >= 2 || (strong == 0 && widths.Length > 0))
             {
                 return Math.Clamp(widths[widths.Length / 4], 0.2, 10);
             }

@@ -73,8 +73,8 @@ internal static class MeasuredSignals
         foreach (int top in tops)
         {
             double needed = Math.Max(ProminenceInNoise * noise, ProminenceOfHeight * y[top]);
-            double left = Valley(y, top, -1, needed);
-            double right = Valley(y, top, 1, needed);
+            double left = Valley(y, top, -1, noise);
+            double right = Valley(y, top, 1, noise);
             double prominence = y[top] - Math.Max(left, right);
             if (prominence < needed)
             {
@@ -91,8 +91,8 @@ internal static class MeasuredSignals
         return kept;
     }
 
-    /// <summary>Lowest point on one side before the curve rises above the top; stops early once it is low enough.</summary>
-    private static double Valley(double[] y, int top, int direction, double needed)
+    /// <summary>Lowest point on one side before the curve rises above the top; the search ends where the curve is down in the noise.</summary>
+    private static double Valley(double[] y, int top, int direction, double noise)
     {
         double lowest = y[top];
         for (int i = top + direction; i >= 0 && i < y.Length; i += direction)
@@ -103,7 +103,7 @@ internal static class MeasuredSignals
             }
 
             lowest = Math.Min(lowest, y[i]);
-            if (y[top] - lowest > Math.Max(4 * needed, 0.6 * y[top]))
+            if (lowest <= noise)
             {
                 return lowest;
             }
