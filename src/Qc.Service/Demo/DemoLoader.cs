@@ -28,7 +28,7 @@ internal static class DemoLoader
             JsonNode known = JsonNode.Parse(await File.ReadAllTextAsync(file, cancellation))!;
             known["url"] = url;
             SecretFile.Write(file, known.ToJsonString(new JsonSerializerOptions { WriteIndented = true }));
-            Announce(app, known, file);
+            Announce(known, file);
             return;
         }
 
@@ -54,15 +54,18 @@ internal static class DemoLoader
             ["limsKey"] = key,
         };
         SecretFile.Write(file, demo.ToJsonString(new JsonSerializerOptions { WriteIndented = true }));
-        Announce(app, demo, file);
+        Announce(demo, file);
     }
 
-    private static void Announce(WebApplication app, JsonNode demo, string file)
+    /// <summary>To the console only: a password has no place in a log.</summary>
+    private static void Announce(JsonNode demo, string file)
     {
         JsonNode reviewer = demo["people"]!.AsArray().First(p => p!["roles"]!.AsArray().Any(r => (string?)r == Roles.Reviewer))!;
-        app.Logger.LogInformation(
-            "Demo plant ready. Open {Url} and sign in as {User} with the password {Password}; everybody else is in {File}",
-            (string?)demo["url"], (string?)reviewer["user"], (string?)reviewer["password"], file);
+        Console.WriteLine();
+        Console.WriteLine($"  The demo plant is ready. Open {(string?)demo["url"]}");
+        Console.WriteLine($"  Sign in as {(string?)reviewer["user"]} with the password {(string?)reviewer["password"]}");
+        Console.WriteLine($"  Everybody else, and the LIMS key: {file}");
+        Console.WriteLine();
     }
 
     private static string Password() => Convert.ToHexStringLower(RandomNumberGenerator.GetBytes(10));
