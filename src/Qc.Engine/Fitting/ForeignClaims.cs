@@ -98,7 +98,8 @@ internal sealed class ForeignClaims
         }
 
         MeasuredSignal signal = signals[bestSignal];
-        bool alone = signal.SpanHertz <= spanHertz + 4;
+        // Water is often broad, with noise on its top.
+        bool alone = signal.SpanHertz <= spanHertz + (known.Role == "water" ? 25 : 4);
         if (known.Role == "water")
         {
             // Water moves and overlaps: it may own a lone maximum but never takes one from the product.

@@ -16,7 +16,7 @@ internal static class LeftOverSearch
     private const double MergeHertz = 12;
 
     /// <summary>The foot of a strong line reaches this far, with this share of its height.</summary>
-    private const double FootHertz = 60;
+    private const double FootHertz = 250;
     private const double FootShare = 0.004;
 
     /// <summary>Regions with net positive area, largest first.</summary>
