@@ -25,6 +25,6 @@ public class FileSizeTests
                     && !f.Contains($"{Path.DirectorySeparatorChar}Migrations{Path.DirectorySeparatorChar}", StringComparison.Ordinal)),
         ];
         Assert.True(files.Length > 50, "The sources were not found.");
-        Assert.Empty(files.Where(f => File.ReadLines(f).Count() > 500));
+        Assert.All(files, f => Assert.True(File.ReadLines(f).Count() <= 500, $"{f} is longer than 500 lines."));
     }
 }
