@@ -1,13 +1,21 @@
 namespace Qc.Engine.Processing;
 
 /// <summary>
-/// Smooth baseline by penalised least squares with signals masked: minimise Σ w (y − z)² + λ Σ (Δ²z)², w small where y
-/// stands above z (asymmetric least squares: Eilers 2003, Anal. Chem. 75, 3631; reweighting by the spread of the residuals
-/// below: Baek et al. 2015, Analyst 140, 250, from memory). Solved on a thinned grid, so that time is linear in the points.
+/// Smooth baseline by penalised least squares with signals masked: minimise Σ w (y − z)² + λ Σ (Δ²z)² (Eilers 2003, Anal.
+/// Chem. 75, 3631). Stretches that vary more than the noise have next to no weight; the others lose theirs by a logistic rule
+/// of their distance from z in units of the spread below z, sooner above z than below it (after Baek et al. 2015, Analyst 140,
+/// 250, from memory), as signals are positive but the foot of a badly phased line is not baseline either. Solved on a thinned
+/// grid, so that time is linear in the points.
 /// </summary>
 public static class Baseline
 {
-    private const int Rounds = 12;
+    private const int Rounds = 20;
+
+    /// <summary>Waves down to an eighth of the spectrum are followed: gain 1/(1 + λω⁴), ω = 2π/period, which is 1/2 there.</summary>
+    private const double LambdaScale = 30;
+    private const double PositiveReach = 2.5;
+    private const double NegativeReach = 4;
+    private const double SmallestQuietShare = 0.05;
 
     /// <summary>The baseline at every point.</summary>
     /// <param name="values">The spectrum.</param>
@@ -24,9 +32,9 @@ public static class Baseline
             y[k] = Median(values, k * bin, Math.Min((k + 1) * bin, values.Length));
         }
 
-        double lambda = Math.Pow(count / 12.0, 4);
-        var weight = new double[count];
-        Array.Fill(weight, 1);
+        double lambda = Math.Pow(count / LambdaScale, 4);
+        double[] allowed = QuietWeights(values, bin, count, noise);
+        double[] weight = [.. allowed];
         double[] z = y;
         double floor = Math.Max(noise / Math.Sqrt(bin), 1e-300);
         for (int round = 0; round < Rounds; round++)
@@ -36,11 +44,48 @@ public static class Baseline
             for (int k = 0; k < count; k++)
             {
                 double t = (y[k] - z[k]) / spread;
-                weight[k] = t <= 0 ? 1 : 1 / (1 + Math.Exp(Math.Min(60, 2 * (t - 2))));
+                weight[k] = allowed[k] / (1 + Math.Exp(Math.Min(60, 2 * (t <= 0 ? -t - NegativeReach : t - PositiveReach))));
             }
         }
 
         return Interpolate(z, bin, values.Length);
+    }
+
+    /// <summary>
+    /// To begin with only stretches that vary no more than the noise count; where there are next to none, all do. A spectrum
+    /// without noise (a calculated one) has none either.
+    /// </summary>
+    private static double[] QuietWeights(double[] values, int bin, int count, double noise)
+    {
+        var weight = new double[count];
+        int quiet = 0;
+        for (int k = 0; k < count; k++)
+        {
+            int from = k * bin;
+            int to = Math.Min((k + 1) * bin, values.Length);
+            double mean = 0;
+            for (int i = from; i < to; i++)
+            {
+                mean += values[i] / (to - from);
+            }
+
+            double square = 0;
+            for (int i = from; i < to; i++)
+            {
+                square += (values[i] - mean) * (values[i] - mean) / (to - from);
+            }
+
+            bool isQuiet = square < 2 * noise * noise;
+            weight[k] = isQuiet ? 1 : 1e-6;
+            quiet += isQuiet ? 1 : 0;
+        }
+
+        if (quiet < SmallestQuietShare * count)
+        {
+            Array.Fill(weight, 1);
+        }
+
+        return weight;
     }
 
     private static double SpreadBelow(double[] y, double[] z)

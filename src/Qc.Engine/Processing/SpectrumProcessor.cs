@@ -17,6 +17,8 @@ public static class SpectrumProcessor
     private const double SignalGapHertz = 22;
     private const double DerivedDelayReachRadians = 6 * Math.PI;
     private const double StatedDelayReachRadians = Math.PI;
+    private const double DerivedDelayPriorRadians = 4 * Math.PI;
+    private const double StatedDelayPriorRadians = 0.3;
 
     /// <summary>Processes a measurement.</summary>
     public static ProcessingOutcome Process(Measurement measurement, ProcessingOptions options)
@@ -35,8 +37,11 @@ public static class SpectrumProcessor
             (delay, derived) = (transformed.GroupDelayPoints, transformed.DelayDerived);
             steps.Add(TransformStep(fid, transformed));
             (double zero, double first) = AutoPhase.Find(
-                transformed.Points, derived ? DerivedDelayReachRadians : StatedDelayReachRadians);
-            steps.Add(Step("phase", "Phased to the least entropy of the derivative without negative signal.", ("zeroDegrees", Degrees(zero)), ("firstDegrees", Degrees(first))));
+                transformed.Points,
+                fid.DwellSeconds,
+                derived ? DerivedDelayReachRadians : StatedDelayReachRadians,
+                derived ? DerivedDelayPriorRadians : StatedDelayPriorRadians);
+            steps.Add(Step("phase", "Phased so that the signals agree on being absorption; dispersion is odd about each line.", ("zeroDegrees", Degrees(zero)), ("firstDegrees", Degrees(first))));
             intensity = [.. AutoPhase.Apply(transformed.Points, zero, first).Select(c => c.Real)];
             (firstPpm, ppmPerPoint) = (transformed.FirstPpm, transformed.PpmPerPoint);
         }
@@ -100,7 +105,7 @@ public static class SpectrumProcessor
 
         steps.Add(Step(
             "baseline",
-            "A smooth baseline was taken off by asymmetric penalised least squares.",
+            "A smooth baseline through the signal-free stretches was taken off, by penalised least squares.",
             ("largestInNoise", noise > 0 ? largest / noise : 0)));
         var corrected = new double[intensity.Length];
         for (int i = 0; i < corrected.Length; i++)
@@ -115,11 +120,13 @@ public static class SpectrumProcessor
     {
         string delay = transformed.DelayDerived ? "derived from the data, the header being silent" : "as the header states";
         string centre = fid.CentrePpm is null ? " The header does not tell the shift at the transmitter; 4.7 ppm is taken until the axis is referenced." : "";
+        string broadening = transformed.BroadeningHertz > 0 ? " The FID was cut short and was damped towards its end." : "";
         return Step(
             "transform",
-            $"Fourier transform with the first point halved and zero filling; delay of the digital filter {delay}.{centre}",
+            $"Fourier transform with zero filling; delay of the digital filter {delay}.{broadening}{centre}",
             ("points", transformed.Points.Length),
-            ("groupDelayPoints", transformed.GroupDelayPoints));
+            ("groupDelayPoints", transformed.GroupDelayPoints),
+            ("broadeningHertz", transformed.BroadeningHertz));
     }
 
     /// <summary>A noiseless (calculated) spectrum still needs a scale for its tolerances: a millionth of its highest point.</summary>
