@@ -1,4 +1,11 @@
 using BenchmarkDotNet.Running;
+using Qc.Benchmarks;
 
-// Run with "-c Release -- --filter *Spin*"; without arguments it lists what there is.
+// "report lines" and the like print statistics; anything else is for the benchmark runner, e.g. "--filter *Spin*".
+if (args is ["report", var subject, .. var rest])
+{
+    return Reports.Print(subject, rest);
+}
+
 BenchmarkSwitcher.FromAssembly(typeof(Program).Assembly).Run(args);
+return 0;
