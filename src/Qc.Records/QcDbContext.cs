@@ -45,6 +45,9 @@ public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : Identit
     /// <summary>Certificates.</summary>
     public DbSet<Certificate> Certificates => Set<Certificate>();
 
+    /// <summary>Withdrawals of certificates.</summary>
+    public DbSet<CertificateEvent> CertificateEvents => Set<CertificateEvent>();
+
     /// <summary>Keys of repeated submissions.</summary>
     public DbSet<IdempotencyRecord> IdempotencyRecords => Set<IdempotencyRecord>();
 
@@ -87,6 +90,7 @@ public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : Identit
         builder.Entity<LimsKeyRevocation>().HasKey(r => r.KeyId);
         builder.Entity<AuditRow>().HasKey(r => r.Index);
         builder.Entity<AuditRow>().Property(r => r.Index).ValueGeneratedNever();
+        builder.Entity<AuditRow>().Property(r => r.TransactionId).HasColumnType("xid8").ValueGeneratedOnAdd();
         builder.Entity<MerkleNode>().HasKey(n => new { n.Level, n.Index });
         // References without navigations: EF Core then inserts in their order.
         builder.Entity<SpecificationVersion>().HasOne<Product>().WithMany().HasForeignKey(s => s.ProductId);
@@ -102,6 +106,9 @@ public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : Identit
         builder.Entity<Review>().HasOne<Computation>().WithMany().HasForeignKey(r => r.ComputationId);
         builder.Entity<Review>().HasOne<Signature>().WithMany().HasForeignKey(r => r.SignatureId);
         builder.Entity<Certificate>().HasOne<Lot>().WithMany().HasForeignKey(c => c.LotId);
+        builder.Entity<Certificate>().HasOne<Certificate>().WithMany().HasForeignKey(c => c.SupersedesNumber);
+        builder.Entity<CertificateEvent>().HasOne<Certificate>().WithMany().HasForeignKey(e => e.CertificateNumber);
+        builder.Entity<CertificateEvent>().HasOne<Signature>().WithMany().HasForeignKey(e => e.SignatureId);
         builder.Entity<IdempotencyRecord>().HasOne<Lot>().WithMany().HasForeignKey(r => r.LotId);
         builder.Entity<LimsKeyRevocation>().HasOne<LimsKey>().WithOne().HasForeignKey<LimsKeyRevocation>(r => r.KeyId);
         builder.Entity<TreeHeadRow>().ToTable("tree_heads").HasKey(h => new { h.Size, h.At });

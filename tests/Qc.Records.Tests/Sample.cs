@@ -18,7 +18,13 @@ internal static class Sample
         ExpectationJson = "{}", CreatedAt = At, CreatedBy = "person:owner",
     };
 
-    public static async Task FillEveryTableAsync(string owner)
+    public static Certificate Certificate(string lotId, CertificateNumber number, int version = 1) => new()
+    {
+        Number = number.ToString(), Year = number.Year, Serial = number.Serial, LotId = lotId, Version = version, Json = "{}", Pdf = [1], PdfSha256 = "", IssuedAt = At,
+    };
+
+    /// <summary>Returns the lot's identifier.</summary>
+    public static async Task<string> FillEveryTableAsync(string owner)
     {
         await using QcDbContext context = DatabaseFixture.Context(owner);
         await using var transaction = await context.Database.BeginTransactionAsync();
@@ -41,26 +47,25 @@ internal static class Sample
             ReportJson = "{}", ReportSha256 = "", RequestSha256 = "", DurationMilliseconds = 1, At = At,
         };
         var key = new LimsKey { Id = Ids.New(At), Name = "LIMS", SecretSha256 = "", Scopes = "lots:write", CreatedAt = At, CreatedBy = "person:admin" };
-        context.AddRange(product, signature, key);
-        await context.SaveChangesAsync();
-        context.Add(specification);
-        await context.SaveChangesAsync();
-        context.Add(lot);
-        await context.SaveChangesAsync();
         context.AddRange(
+            product,
+            specification,
             new SpecificationEvent { Id = Ids.New(At), SpecificationId = specification.Id, Kind = SpecificationEvent.Approved, EffectiveFrom = At, At = At, By = "person:qu" },
+            signature,
+            lot,
             new LotSpectrum { LotId = lot.Id, Number = 1, Name = "proton", Format = "jcamp-dx", Sha256 = "", Bytes = [1] },
             new LotEvent { LotId = lot.Id, State = LotState.Queued, At = At, By = "service" },
-            computation,
             new IdempotencyRecord { Principal = "key:1", Key = "k", BodySha256 = "", LotId = lot.Id, At = At },
-            new LimsKeyRevocation { KeyId = key.Id, At = At, By = "person:admin" },
-            new Certificate { Number = "QC-2026-000001", Year = 2026, Serial = 1, LotId = lot.Id, Version = 1, Json = "{}", Pdf = [1], PdfSha256 = "", IssuedAt = At },
-            new TreeHeadRow { Size = 1, At = At, RootHash = new byte[32], SignedText = "", Signature = "" });
-        await context.SaveChangesAsync();
-        context.AddRange(
+            computation,
             new Trace { ComputationId = computation.Id, SpectrumNumber = 1, FirstPpm = 10, PpmPerPoint = -1, Count = 0, Measured = [], Modelled = [] },
-            new Review { Id = Ids.New(At), LotId = lot.Id, Number = 1, ComputationId = computation.Id, Decision = "release", Reason = "in order", FindingsJson = "[]", At = At, By = "person:r", SignatureId = signature.Id });
+            new Review { Id = Ids.New(At), LotId = lot.Id, Number = 1, ComputationId = computation.Id, Decision = "release", Reason = "in order", FindingsJson = "[]", At = At, By = "person:r", SignatureId = signature.Id },
+            Certificate(lot.Id, new CertificateNumber(2001, 1)),
+            new CertificateEvent { Id = Ids.New(At), CertificateNumber = "QC-2001-000001", Kind = CertificateEvent.Withdrawn, Reason = "wrong label", At = At, By = "person:qu", SignatureId = signature.Id },
+            key,
+            new LimsKeyRevocation { KeyId = key.Id, At = At, By = "person:admin" },
+            new TreeHeadRow { Size = 1, At = At, RootHash = new byte[32], SignedText = "", Signature = "" });
         await context.SaveWithAuditAsync([new AuditDraft("person:owner", "product.created", "product", product.Id)]);
         await transaction.CommitAsync();
+        return lot.Id;
     }
 }

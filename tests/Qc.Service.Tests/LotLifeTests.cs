@@ -68,7 +68,7 @@ public sealed class LotLifeTests(ServiceFixture service)
         Assert.Equal(id, (string?)certificate["lot"]!["id"]);
         Assert.Equal("flag", (string?)certificate["verdict"]);
 
-        await AssertProvenAsync(id, ["lot.submitted", "lot.checked", "lot.release", "certificate.intended", "certificate.issued"]);
+        await AssertProvenAsync(id, ["lot.submitted", "lot.checking", "lot.checked", "lot.release", "certificate.intended", "certificate.issued"]);
     }
 
     [Fact]

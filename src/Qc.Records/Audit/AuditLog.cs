@@ -1,6 +1,8 @@
+using System.Data.Common;
 using System.Text;
 using System.Text.Json.Nodes;
 using Microsoft.EntityFrameworkCore;
+using Microsoft.EntityFrameworkCore.Storage;
 using Qc.Evidence;
 
 namespace Qc.Records.Audit;
@@ -22,8 +24,6 @@ public sealed record AuditDraft(
 /// </summary>
 public static class AuditLog
 {
-    private const long LockKey = 0x5143_4155; // "QCAU"
-
     /// <summary>
     /// Saves the pending facts and appends their entries, all in the context's open transaction. The caller commits.
     /// Call it last in a transaction: other writers wait from here to the commit.
@@ -38,10 +38,7 @@ public static class AuditLog
         }
 
         await context.SaveChangesAsync(cancellation);
-        await context.Database.ExecuteSqlRawAsync($"SELECT pg_advisory_xact_lock({LockKey})", cancellation);
-        DateTimeOffset now = await context.DatabaseTimeAsync(cancellation);
-        long size = await context.AuditSizeAsync(cancellation);
-        var written = new Dictionary<(int, long), byte[]>();
+        (long size, DateTimeOffset now, Dictionary<(int, long), byte[]> nodes) = await context.BeginAppendAsync(cancellation);
         foreach (AuditDraft draft in drafts)
         {
             var entry = new AuditEntry(
@@ -59,10 +56,9 @@ public static class AuditLog
                 CanonicalJson = Encoding.UTF8.GetString(content),
                 LeafHash = leaf,
             });
-            Dictionary<(int, long), byte[]> left = await context.LeftNeighboursAsync(size, written, cancellation);
-            foreach ((int level, long index, byte[] hash) in MerkleTree.NodesFinishedBy(size, leaf, (l, i) => left[(l, i)]))
+            foreach ((int level, long index, byte[] hash) in MerkleTree.NodesFinishedBy(size, leaf, (l, i) => nodes[(l, i)]))
             {
-                written[(level, index)] = hash;
+                nodes[(level, index)] = hash;
                 context.MerkleNodes.Add(new MerkleNode { Level = level, Index = index, Hash = hash });
             }
 
@@ -96,22 +92,21 @@ public static class AuditLog
         };
     }
 
-    /// <summary>The nodes to the left that an append at this index is hashed with.</summary>
-    private static async Task<Dictionary<(int, long), byte[]>> LeftNeighboursAsync(
-        this QcDbContext context, long index, Dictionary<(int, long), byte[]> written, CancellationToken cancellation)
+    /// <summary>Waits for the other writers; size, time, and the complete subtrees that make up the log, by level and index.</summary>
+    private static async Task<(long Size, DateTimeOffset Now, Dictionary<(int Level, long Index), byte[]> Nodes)> BeginAppendAsync(
+        this QcDbContext context, CancellationToken cancellation)
     {
-        var needed = new Dictionary<(int, long), byte[]>();
-        int level = 0;
-        for (long i = index; (i & 1) == 1; i >>= 1)
-        {
-            int l = level;
-            long left = i - 1;
-            needed[(l, left)] = written.TryGetValue((l, left), out byte[]? hash)
-                ? hash
-                : (await context.MerkleNodes.AsNoTracking().SingleAsync(n => n.Level == l && n.Index == left, cancellation)).Hash;
-            level++;
-        }
-
-        return needed;
+        await using DbCommand command = context.Database.GetDbConnection().CreateCommand();
+        command.Transaction = context.Database.CurrentTransaction!.GetDbTransaction();
+        command.CommandText = "SELECT size, at, levels, hashes FROM qc.begin_audit()";
+        await using DbDataReader reader = await command.ExecuteReaderAsync(cancellation);
+        await reader.ReadAsync(cancellation);
+        long size = reader.GetInt64(0);
+        int[] levels = await reader.GetFieldValueAsync<int[]>(2, cancellation);
+        byte[][] hashes = await reader.GetFieldValueAsync<byte[][]>(3, cancellation);
+        return (
+            size,
+            await reader.GetFieldValueAsync<DateTimeOffset>(1, cancellation),
+            levels.Zip(hashes).ToDictionary(n => (n.First, (size >> n.First) - 1), n => n.Second));
     }
 }

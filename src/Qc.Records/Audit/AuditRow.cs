@@ -26,6 +26,9 @@ public sealed class AuditRow
 
     /// <summary>Hash of the leaf.</summary>
     public required byte[] LeafHash { get; init; }
+
+    /// <summary>The transaction that wrote it; set by the database, which so knows that a fact has its entry.</summary>
+    public ulong TransactionId { get; private set; }
 }
 
 /// <summary>Hash of a complete subtree.</summary>

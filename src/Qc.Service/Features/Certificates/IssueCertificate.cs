@@ -1,5 +1,4 @@
 using System.Collections.Immutable;
-using System.Globalization;
 using System.Runtime.InteropServices;
 using System.Security.Cryptography;
 using System.Text.Json;
@@ -31,8 +30,6 @@ namespace Qc.Service.Features.Certificates;
 public sealed class IssueCertificate(
     QcDbContext context, IDbContextOutbox<QcDbContext> outbox, SignedHeads heads, SiteCertificate site, QcOptions options)
 {
-    private const long SeriesLock = 0x5143_4345; // "QCCE": numbers are taken one at a time, so the series has no gap.
-
     /// <summary>Releases a lot that passed, where its specification lets it go without a reviewer.</summary>
     public async Task ReleaseByExceptionAsync(string lotId, CancellationToken cancellation)
     {
@@ -63,20 +60,18 @@ public sealed class IssueCertificate(
         await RecordIntentAsync(lotId, actor, facts, cancellation);
         SignedHead head = await heads.TakeAsync(cancellation);
         await using var transaction = await context.Database.BeginTransactionAsync(cancellation);
-        await context.Database.ExecuteSqlRawAsync($"SELECT pg_advisory_xact_lock({SeriesLock})", cancellation);
+        CertificateNumber taken = await context.NextCertificateNumberAsync(cancellation);
+        string number = taken.ToString();
         DateTimeOffset now = await context.DatabaseTimeAsync(cancellation);
-        int year = now.UtcDateTime.Year;
-        int serial = 1 + (await context.Certificates.Where(c => c.Year == year).MaxAsync(c => (int?)c.Serial, cancellation) ?? 0);
         int version = 1 + (await context.Certificates.Where(c => c.LotId == lotId).MaxAsync(c => (int?)c.Version, cancellation) ?? 0);
-        string number = string.Create(CultureInfo.InvariantCulture, $"QC-{year:0000}-{serial:000000}");
         string json = CertificateMapping.Json(facts, number, now, head, options);
         CertificateContent content = CertificateMapping.Content(facts, number, version, now, head, options, json);
         byte[] pdf = site.Signer.Sign(CertificateRenderer.Render(content, token));
         context.Certificates.Add(new Certificate
         {
             Number = number,
-            Year = year,
-            Serial = serial,
+            Year = taken.Year,
+            Serial = taken.Serial,
             LotId = lotId,
             Version = version,
             Json = json,

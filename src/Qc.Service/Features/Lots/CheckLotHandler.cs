@@ -48,8 +48,10 @@ public sealed class LotChecker(
 
     private async Task BeginAsync(string lotId, CancellationToken cancellation)
     {
+        await using var transaction = await context.Database.BeginTransactionAsync(cancellation);
         context.LotEvents.Add(new LotEvent { LotId = lotId, State = LotState.Checking, At = await context.DatabaseTimeAsync(cancellation), By = Service });
-        await context.SaveChangesAsync(cancellation);
+        await context.SaveWithAuditAsync([new AuditDraft(Service, "lot.checking", "lot", lotId)], cancellation);
+        await transaction.CommitAsync(cancellation);
     }
 
     private async Task CheckAsync(string lotId, CancellationToken cancellation)

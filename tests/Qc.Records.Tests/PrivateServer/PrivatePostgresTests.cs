@@ -3,7 +3,7 @@ using Npgsql;
 using Qc.Records.PrivateServer;
 using Xunit;
 
-namespace Qc.Records.Tests;
+namespace Qc.Records.Tests.PrivateServer;
 
 /// <summary>One data folder for these tests: a server on it is started and stopped by each.</summary>
 public sealed class DataFolder : IDisposable

@@ -4,7 +4,7 @@ using Qc.Evidence;
 using Qc.Records.Audit;
 using Xunit;
 
-namespace Qc.Records.Tests;
+namespace Qc.Records.Tests.Audit;
 
 [Collection(DatabaseCollection.Name)]
 public class AuditLogTests(DatabaseFixture database)
