@@ -12,7 +12,7 @@ namespace Qc.Engine.Rivals;
 /// electronegative atom (C=O: none); otherwise a lone pair gives two. Of fused rings taken together the outline is aromatic.
 /// That both agree is tested structure by structure.
 /// </remarks>
-internal static class Perception
+public static class Perception
 {
     private const int MostFused = 3;
 
