@@ -109,6 +109,10 @@ internal sealed class FitGrid
         return (first, end);
     }
 
+    /// <summary>Range of grid indices from a low to a high position.</summary>
+    public (int First, int End) Between(double lowHertz, double highHertz) =>
+        (FirstAtOrBelow(highHertz), FirstAtOrBelow(lowHertz));
+
     private int FirstAtOrBelow(double positionHertz)
     {
         int low = 0;

@@ -10,6 +10,9 @@ namespace Qc.Engine.Fitting;
 internal sealed class FitReading
 {
     private const double TailInWidths = 400;
+
+    /// <summary>Most that the misfit of one signal counts in the evidence, in units of half a squared standard deviation.</summary>
+    private const double LargestSignalMisfit = 60;
     private readonly FitInput _input;
     private readonly ImmutableArray<MeasuredSignal> _signals;
     private readonly FitSetup _setup;
@@ -49,7 +52,8 @@ internal sealed class FitReading
     /// <summary>Names of the other substances already in the model.</summary>
     public IEnumerable<string> KnownNames => _setup.Known.Select(k => k.Substance.Name);
 
-    public FitResult ToResult() => new()
+    /// <summary>The result, its model drawn on the spectrum as processed, baseline included.</summary>
+    public FitResult ToResult(Spectrum processed) => new()
     {
         Groups = [.. _input.Product.Protons.Groups.Select(Group)],
         Couplings = Couplings(),
@@ -59,7 +63,8 @@ internal sealed class FitReading
         AreaPerProtonRelativeUncertainty = AreaPerProtonRelativeUncertainty,
         WidthHertz = WidthHertz,
         MeasuredWidthHertz = TypicalWidthHertz,
-        Modelled = Modelled,
+        Modelled = [.. Modelled.Select((m, i) => m + processed.Intensity[i] - _input.Spectrum.Intensity[i])],
+        Baseline = [.. processed.Intensity.Zip(_input.Spectrum.Intensity, (y, level) => y - level)],
         Converged = _state.Converged,
         LogEvidence = LogEvidence(),
     };
@@ -315,7 +320,9 @@ internal sealed class FitReading
 
     /// <summary>
     /// Laplace approximation: ln Z = −cost + Σ ln(posterior/prior width), less a stated cost for every expected group
-    /// that has no signal at all (MacKay 1992, from memory).
+    /// that has no signal at all (MacKay 1992, from memory). The data's part of the cost is taken over every signal of the
+    /// spectrum, also those that this structure leaves undrawn, so that structures are compared on the same data; each
+    /// signal counts up to a limit, since one gross misfit must not hide the rest.
     /// </summary>
     private double LogEvidence()
     {
@@ -331,7 +338,39 @@ internal sealed class FitReading
             g.Lability == Lability.Fixed
             && _setup.Product.AmplitudeOf[g.Index] < 0
             && _input.Spectrum.WindowPpm.Contains(_input.Product.Shifts[g.Index].ShiftPpm));
-        return -_state.Cost + occam - (SpectrumFit.AbsentGroupCost * absent);
+        return -MisfitOfSignals() - (_state.Cost - _state.DataCost) + occam - (SpectrumFit.AbsentGroupCost * absent);
+    }
+
+    /// <summary>Half a sum of squares over all signals, each up to a limit that grows with its area up to half a proton.</summary>
+    private double MisfitOfSignals()
+    {
+        Spectrum spectrum = _input.Spectrum;
+        FitGrid whole = FitGrid.Lay(
+            spectrum, spectrum.Intensity, [spectrum.WindowPpm], TypicalWidthHertz, spectrum.NoiseStandardDeviation, SpectrumFit.FineMisfitShare);
+        double areaPerProton = AreaOfExpectedProton();
+        double sum = 0;
+        foreach (MeasuredSignal signal in _signals)
+        {
+            (int first, int end) = whole.Between(signal.Ppm.Low * spectrum.FrequencyMHz, signal.Ppm.High * spectrum.FrequencyMHz);
+            double misfit = 0;
+            for (int i = first; i < end; i++)
+            {
+                int at = (int)Math.Round(spectrum.IndexOf(whole.Hertz[i] / spectrum.FrequencyMHz));
+                double z = (whole.Intensity[i] - Modelled[at]) * whole.Weight[i];
+                misfit += 0.5 * z * z;
+            }
+
+            sum += Math.Min(misfit, LargestSignalMisfit * Math.Clamp(2 * signal.Area / areaPerProton, 0, 1));
+        }
+
+        return sum;
+    }
+
+    /// <summary>A scale that does not depend on the structure's assignment: all signal over all expected protons.</summary>
+    private double AreaOfExpectedProton()
+    {
+        double protons = _input.Product.Protons.Groups.Where(g => g.Lability == Lability.Fixed).Sum(g => (double)g.Count);
+        return Math.Max(1e-300, _signals.Sum(s => s.Area) / Math.Max(1, protons));
     }
 
     private double[] Render(IEnumerable<int> amplitudes)

@@ -87,8 +87,11 @@ public sealed record FitResult
     /// <summary>Width at half height as measured on the lines that stand clear, in Hz; what a shim is judged by.</summary>
     public required double MeasuredWidthHertz { get; init; }
 
-    /// <summary>The model at every point of the spectrum.</summary>
+    /// <summary>The model at every point of the spectrum, its smooth baseline included.</summary>
     public required double[] Modelled { get; init; }
+
+    /// <summary>The smooth baseline in it: feet, humps and rolls far wider than a multiplet.</summary>
+    public required double[] Baseline { get; init; }
 
     /// <summary>Whether the last stage of the fit came to rest.</summary>
     public required bool Converged { get; init; }

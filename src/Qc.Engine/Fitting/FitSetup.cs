@@ -134,15 +134,17 @@ internal sealed class FitSetup
             }
         }
 
+        // The two kinds of couplings are numbered apart.
+        var heteroCouplingOf = new SortedDictionary<int, int>();
         foreach (ExpectedHeteroCoupling coupling in expectation.HeteroCouplings)
         {
-            if (amplitudeOf[expectation.Protons.Sets[coupling.Set].Group] >= 0 && !couplingOf.ContainsKey(coupling.Parameter))
+            if (amplitudeOf[expectation.Protons.Sets[coupling.Set].Group] >= 0 && !heteroCouplingOf.ContainsKey(coupling.Parameter))
             {
-                couplingOf[coupling.Parameter] = AddCoupling(model, coupling.Parameter, coupling.Hertz, coupling.StandardUncertaintyHertz);
+                heteroCouplingOf[coupling.Parameter] = AddCoupling(model, coupling.Parameter, coupling.Hertz, coupling.StandardUncertaintyHertz);
             }
         }
 
-        model.Sources.Add(new SpinSource(expectation, frequencyMHz, shiftOf, couplingOf, amplitudeOf, widthOf));
+        model.Sources.Add(new SpinSource(expectation, frequencyMHz, shiftOf, couplingOf, heteroCouplingOf, amplitudeOf, widthOf));
         return new SubstanceColumns(shiftOf, amplitudeOf, widthOf, couplingOf, tie);
     }
 

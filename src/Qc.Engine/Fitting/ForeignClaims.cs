@@ -10,7 +10,7 @@ internal sealed class ForeignClaims
 {
     private readonly double[] _area;
     private readonly double[] _uncertainty;
-    private readonly bool[] _optional;
+    private readonly double[] _unassignedCost;
     private readonly bool[] _wholly;
     private int _water = -1;
 
@@ -18,7 +18,8 @@ internal sealed class ForeignClaims
     {
         _area = new double[signals];
         _uncertainty = new double[signals];
-        _optional = new bool[signals];
+        _unassignedCost = new double[signals];
+        Array.Fill(_unassignedCost, GroupAssignment.LargestUnassignedCost);
         _wholly = new bool[signals];
     }
 
@@ -34,9 +35,12 @@ internal sealed class ForeignClaims
     /// <summary>Whether a signal belongs to something else altogether.</summary>
     public bool IsWholly(int signal) => _wholly[signal];
 
+    /// <summary>Whether a signal lies where water does.</summary>
+    public bool IsWater(int signal) => _water == signal;
+
     /// <summary>The signal as offered to the product's groups.</summary>
     public AssignableSignal Offer(MeasuredSignal signal, int index) =>
-        new(signal, _area[index], _uncertainty[index], _optional[index]);
+        new(signal, _area[index], _uncertainty[index], _unassignedCost[index]);
 
     /// <summary>Works out the claims.</summary>
     public static ForeignClaims Of(FitInput input, ImmutableArray<MeasuredSignal> signals)
@@ -99,13 +103,13 @@ internal sealed class ForeignClaims
 
         MeasuredSignal signal = signals[bestSignal];
         // Water is often broad, with noise on its top.
-        bool alone = signal.SpanHertz <= spanHertz + (known.Role == "water" ? 25 : 4);
+        bool alone = signal.StrongSpanHertz <= spanHertz + (known.Role == "water" ? 25 : 4);
         if (known.Role == "water")
         {
             // Water moves and overlaps: it may own a lone maximum but never takes one from the product.
             if (alone)
             {
-                _optional[bestSignal] = true;
+                _unassignedCost[bestSignal] = GroupAssignment.OwnedElsewhereCost;
                 _water = bestSignal;
             }
 
@@ -117,7 +121,7 @@ internal sealed class ForeignClaims
         if (alone)
         {
             _wholly[bestSignal] = true;
-            _optional[bestSignal] = true;
+            _unassignedCost[bestSignal] = GroupAssignment.OwnedElsewhereCost;
             area = signal.Area;
         }
 
@@ -155,7 +159,7 @@ internal sealed class ForeignClaims
             if (best >= 0)
             {
                 _wholly[best] = true;
-                _optional[best] = true;
+                _unassignedCost[best] = GroupAssignment.OwnedElsewhereCost;
                 _uncertainty[best] += signals[best].Area;
             }
         }
@@ -163,18 +167,21 @@ internal sealed class ForeignClaims
         InternalStandardSignals = [.. chosen];
     }
 
+    /// <summary>
+    /// A signal of few lines may be an exchangeable proton's: the surer, the nearer it lies to that proton's expected place,
+    /// which itself is known to a ppm or so only.
+    /// </summary>
     private void LetExchangeableClaim(FitInput input, ImmutableArray<MeasuredSignal> signals)
     {
         foreach (ProtonGroup group in input.Product.Protons.Groups.Where(g => g.Lability == Lability.Exchangeable))
         {
             ExpectedShift shift = input.Product.Shifts[group.Index];
-            double reach = 2 * Math.Max(0.5, shift.StandardUncertaintyPpm);
             for (int s = 0; s < signals.Length; s++)
             {
-                bool single = signals[s].Maxima.Length <= 3;
-                if (single && Math.Abs(signals[s].CentroidPpm - shift.ShiftPpm) < reach)
+                double z = (signals[s].CentroidPpm - shift.ShiftPpm) / Math.Max(0.5, shift.StandardUncertaintyPpm);
+                if (signals[s].StrongMaxima <= 3)
                 {
-                    _optional[s] = true;
+                    _unassignedCost[s] = Math.Min(_unassignedCost[s], GroupAssignment.OwnedElsewhereCost + (0.5 * z * z));
                 }
             }
         }

@@ -15,8 +15,8 @@ internal sealed record AssignableGroup(int Group, int Count, double ShiftPpm, do
 /// <param name="Signal">The signal.</param>
 /// <param name="ForeignArea">Area in it already claimed by solvent, water or reference.</param>
 /// <param name="ForeignUncertainty">Standard uncertainty of that area.</param>
-/// <param name="Optional">Whether something other than the product may own it: an exchangeable proton, water, a standard.</param>
-internal sealed record AssignableSignal(MeasuredSignal Signal, double ForeignArea, double ForeignUncertainty, bool Optional)
+/// <param name="UnassignedCost">Most that it costs to give it to no group; small where an exchangeable proton, water or a standard may own it.</param>
+internal sealed record AssignableSignal(MeasuredSignal Signal, double ForeignArea, double ForeignUncertainty, double UnassignedCost)
 {
     /// <summary>Area left for the product.</summary>
     public double Area => Math.Max(0, Signal.Area - ForeignArea);
@@ -39,9 +39,13 @@ internal static class GroupAssignment
     private const double AbsentCost = 30;
     private const double LargestShiftCost = 40;
     private const double LargestAreaCost = 25;
-    private const double LargestUnassignedCost = 18;
-    private const double OptionalUnassignedCost = 0.5;
     private const double LargestWidthCost = 5;
+
+    /// <summary>Most that a signal without an owner costs.</summary>
+    internal const double LargestUnassignedCost = 18;
+
+    /// <summary>What it costs where something else surely owns it.</summary>
+    internal const double OwnedElsewhereCost = 0.5;
 
     /// <summary>The best assignments, best first, at most <paramref name="wanted"/>, all different.</summary>
     public static ImmutableArray<Assignment> Best(
@@ -192,7 +196,7 @@ internal static class GroupAssignment
         if (protons == 0)
         {
             double left = signal.Area / areaPerProton / 0.25;
-            return Math.Min(signal.Optional ? OptionalUnassignedCost : LargestUnassignedCost, 0.5 * left * left);
+            return Math.Min(signal.UnassignedCost, 0.5 * left * left);
         }
 
         double z = AreaDeviation(protons, signal, areaPerProton);

@@ -33,7 +33,7 @@ public static class SpectrumFit
         ImmutableArray<StartingPlaces> starts = StartingPlaces.Candidates(input, signals, claims, Starts);
         ImmutableArray<Interval> stretches = Stretches(input, signals, claims, starts, width);
         Dictionary<double, double[]> broadened =
-            CoarseStages.Concat(FineStages).ToDictionary(s => s.BroadeningHertz, s => Broadening.Apply(spectrum, s.BroadeningHertz));
+            CoarseStages.ToDictionary(s => s.BroadeningHertz, s => Broadening.Apply(spectrum, s.BroadeningHertz));
 
         FitSetup? bestSetup = null;
         FitState? bestState = null;
@@ -54,23 +54,35 @@ public static class SpectrumFit
             }
         }
 
+        FitInput level = WithoutBaseline(input, signals, bestSetup!, bestState!, width);
+        broadened = FineStages.ToDictionary(s => s.BroadeningHertz, s => Broadening.Apply(level.Spectrum, s.BroadeningHertz));
         foreach (FitStage stage in FineStages)
         {
-            bestState = Run(input, bestSetup!, stretches, broadened, stage, width, bestState, cancellation);
+            bestState = Run(level, bestSetup!, stretches, broadened, stage, width, bestState, cancellation);
         }
 
-        var reading = new FitReading(input, signals, bestSetup!, bestState!, width);
-        ImmutableArray<KnownSubstance> impurities = ImpuritySearch.Find(input, reading);
+        level = WithoutBaseline(input, signals, bestSetup!, bestState!, width);
+        var reading = new FitReading(level, signals, bestSetup!, bestState!, width);
+        ImmutableArray<KnownSubstance> impurities = ImpuritySearch.Find(level, reading);
         if (!impurities.IsEmpty)
         {
             bestSetup!.AddKnown(impurities, spectrum.FrequencyMHz);
             double[] parameters = [.. bestState!.Parameters, .. bestSetup.Model.Parameters.Skip(bestState.Parameters.Length).Select(p => p.Start)];
-            bestState = Refit(input, bestSetup, stretches, broadened, width, parameters, cancellation);
+            bestState = Refit(level, bestSetup, stretches, width, parameters, cancellation);
         }
 
-        FitGrid grid = FitGrid.Lay(spectrum, spectrum.Intensity, stretches, width, spectrum.NoiseStandardDeviation, FineMisfitShare);
+        FitGrid grid = FitGrid.Lay(spectrum, level.Spectrum.Intensity, stretches, width, spectrum.NoiseStandardDeviation, FineMisfitShare);
         new ModelFitter(bestSetup!.Model, grid, 0, spectrum.NoiseStandardDeviation, _ => true).AddUncertainties(bestState!);
-        return new FitReading(input, signals, bestSetup, bestState!, width).ToResult();
+        return new FitReading(level, signals, bestSetup, bestState!, width).ToResult(spectrum);
+    }
+
+    /// <summary>The same input with the smooth part of the residual taken off the spectrum.</summary>
+    private static FitInput WithoutBaseline(
+        FitInput input, ImmutableArray<MeasuredSignal> signals, FitSetup setup, FitState state, double width)
+    {
+        Spectrum spectrum = input.Spectrum;
+        double[] baseline = ResidualBaseline.Of(spectrum, new FitReading(input, signals, setup, state, width).Modelled);
+        return input with { Spectrum = spectrum with { Intensity = [.. spectrum.Intensity.Zip(baseline, (y, b) => y - b)] } };
     }
 
     /// <summary>Share of the local signal that line-shape faults may amount to in the last stages.</summary>
@@ -104,13 +116,12 @@ public static class SpectrumFit
         FitInput input,
         FitSetup setup,
         ImmutableArray<Interval> stretches,
-        Dictionary<double, double[]> broadened,
         double width,
         double[] parameters,
         CancellationToken cancellation)
     {
         FitGrid grid = FitGrid.Lay(
-            input.Spectrum, broadened[0], stretches, width, input.Spectrum.NoiseStandardDeviation, FineMisfitShare);
+            input.Spectrum, input.Spectrum.Intensity, stretches, width, input.Spectrum.NoiseStandardDeviation, FineMisfitShare);
         return new ModelFitter(setup.Model, grid, 0, input.Spectrum.NoiseStandardDeviation, _ => true).Fit(parameters, null, 8, cancellation);
     }
 

@@ -32,7 +32,8 @@ internal sealed class SpinSource : ILineSource
     /// <param name="expectation">The substance.</param>
     /// <param name="frequencyMHz">Field as frequency of 0 ppm.</param>
     /// <param name="shiftParameterOf">By group: parameter of its shift in Hz, or -1.</param>
-    /// <param name="couplingParameterOf">Parameter of a coupling constant by its number, where fitted.</param>
+    /// <param name="couplingParameterOf">Parameter of a coupling constant between protons by its number, where fitted.</param>
+    /// <param name="heteroCouplingParameterOf">Parameter of a coupling constant to another nucleus by its number, where fitted.</param>
     /// <param name="amplitudeOf">By group: amplitude, or -1 where its lines are not drawn.</param>
     /// <param name="widthParameterOf">By group: parameter of ln(width).</param>
     public SpinSource(
@@ -40,6 +41,7 @@ internal sealed class SpinSource : ILineSource
         double frequencyMHz,
         IReadOnlyList<int> shiftParameterOf,
         IReadOnlyDictionary<int, int> couplingParameterOf,
+        IReadOnlyDictionary<int, int> heteroCouplingParameterOf,
         IReadOnlyList<int> amplitudeOf,
         IReadOnlyList<int> widthParameterOf)
     {
@@ -75,7 +77,7 @@ internal sealed class SpinSource : ILineSource
             }
 
             couplings.Add(new SpinCoupling(coupling.Set, site, coupling.Hertz));
-            parameterOfCoupling.Add(couplingParameterOf.GetValueOrDefault(coupling.Parameter, -1));
+            parameterOfCoupling.Add(heteroCouplingParameterOf.GetValueOrDefault(coupling.Parameter, -1));
         }
 
         _compiled = CompiledSpinSystem.Compile(new SpinSystem([.. sites], [.. couplings]), Options);

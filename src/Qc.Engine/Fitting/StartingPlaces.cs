@@ -16,6 +16,12 @@ namespace Qc.Engine.Fitting;
 internal sealed record StartingPlaces(
     double[] StartPpm, bool[] Placed, bool[] Measured, double AreaPerProton, double Cost, int[] SignalOf)
 {
+    /// <summary>An exchangeable proton is placed up to four standard uncertainties from where it is expected: hydrogen bonds move it that far.</summary>
+    private const double LargestExchangeableCost = 8;
+
+    /// <summary>What it costs to give an exchangeable proton the signal that lies where water does.</summary>
+    private const double WaterCost = 4;
+
     /// <summary>Candidate starts, best first.</summary>
     public static ImmutableArray<StartingPlaces> Candidates(
         FitInput input, ImmutableArray<MeasuredSignal> signals, ForeignClaims claims, int wanted)
@@ -106,8 +112,19 @@ internal sealed record StartingPlaces(
             }
         }
 
-        PlaceExchangeable(product, signals, claims, assignment.AreaPerProton, start, placed, signalOf);
-        return new StartingPlaces(start, placed, measured, assignment.AreaPerProton, assignment.Cost, signalOf);
+        double areaPerProton = ScaleOf(signals, claims, assignable, assignment);
+        PlaceExchangeable(product, signals, claims, areaPerProton, start, placed, signalOf);
+        return new StartingPlaces(start, placed, measured, areaPerProton, assignment.Cost, signalOf);
+    }
+
+    /// <summary>Area of one proton over the signals that the assignment uses; the assignment's own scale is coarse.</summary>
+    private static double ScaleOf(
+        ImmutableArray<MeasuredSignal> signals, ForeignClaims claims, List<AssignableGroup> assignable, Assignment assignment)
+    {
+        int[] placed = [.. Enumerable.Range(0, assignable.Count).Where(i => assignment.SignalOf[i] >= 0)];
+        double area = placed.Select(i => assignment.SignalOf[i]).Distinct().Sum(s => claims.Offer(signals[s], s).Area);
+        double protons = placed.Sum(i => (double)assignable[i].Count);
+        return protons > 0 && area > 0 ? area / protons : assignment.AreaPerProton;
     }
 
     /// <summary>Centres of gravity of consecutive slices of a signal whose areas are as the weights, from high to low ppm.</summary>
@@ -186,7 +203,7 @@ internal sealed record StartingPlaces(
         {
             ExpectedShift shift = product.Shifts[group.Index];
             int best = -1;
-            double bestCost = 4.5;
+            double bestCost = LargestExchangeableCost;
             for (int s = 0; s < signals.Length; s++)
             {
                 double protons = areaPerProton > 0 ? signals[s].Area / areaPerProton : 0;
@@ -197,7 +214,7 @@ internal sealed record StartingPlaces(
 
                 double z = (signals[s].CentroidPpm - shift.ShiftPpm) / Math.Max(0.5, shift.StandardUncertaintyPpm);
                 double area = (protons - group.Count) / (0.3 * group.Count);
-                double cost = (0.5 * z * z) + (0.5 * area * area);
+                double cost = (0.5 * z * z) + (0.5 * area * area) + (claims.IsWater(s) ? WaterCost : 0);
                 if (cost < bestCost)
                 {
                     (best, bestCost) = (s, cost);

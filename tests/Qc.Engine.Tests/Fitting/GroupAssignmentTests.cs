@@ -45,7 +45,7 @@ public class GroupAssignmentTests
     public void A_strong_reference_claimed_beforehand_does_not_set_the_scale()
     {
         AssignableGroup[] groups = [Group(0, 2, 4.1), Group(1, 3, 1.3)];
-        AssignableSignal[] signals = [Signal(4.12, 2), Signal(1.26, 3), Signal(0.0, 500) with { ForeignArea = 500, Optional = true }];
+        AssignableSignal[] signals = [Signal(4.12, 2), Signal(1.26, 3), Signal(0.0, 500) with { ForeignArea = 500, UnassignedCost = GroupAssignment.OwnedElsewhereCost }];
         Assignment best = GroupAssignment.Best(groups, signals, 1)[0];
         Assert.Equal([0, 1], best.SignalOf.ToArray());
         Assert.Equal(1, best.AreaPerProton, 0.1);
@@ -58,5 +58,5 @@ public class GroupAssignmentTests
             new Interval(ppm - halfWidthPpm, ppm + halfWidthPpm), area, ppm, 3, [new Maximum(ppm * 400, area, area, 1)]),
         0,
         0,
-        false);
+        GroupAssignment.LargestUnassignedCost);
 }

@@ -14,7 +14,7 @@ internal static class PhaseRule
 
     public static IEnumerable<Finding> Judge(JudgedSpectrum judged)
     {
-        double[] dispersion = Dispersion(judged.Fit.Modelled);
+        double[] dispersion = Dispersion([.. judged.Fit.Modelled.Zip(judged.Fit.Baseline, (m, b) => m - b)]);
         Spectrum spectrum = judged.Spectrum;
         double product = 0;
         double square = 0;
