@@ -47,6 +47,41 @@ public static class AuditExport
         return CanonicalJson.Of(JsonSerializer.SerializeToElement(export));
     }
 
+    /// <summary>
+    /// Checks an export, and that it begins with exactly the entries of a head that was signed earlier and kept elsewhere: on a
+    /// certificate, by an auditor. A log that was rewritten and signed anew passes the first and fails the second.
+    /// </summary>
+    public static Verification VerifyAgainst(ReadOnlyMemory<byte> file, string earlierHead, string earlierSignature, ECDsa publicKey)
+    {
+        Verification whole = Verify(file, publicKey);
+        if (!whole.IsValid)
+        {
+            return whole;
+        }
+
+        if (TreeHead.Parse(earlierHead) is not { } earlier || !TreeHead.Verify(earlierHead, earlierSignature, publicKey))
+        {
+            return new Verification(false, "The earlier head is not signed by this key.");
+        }
+
+        using JsonDocument export = JsonDocument.Parse(file);
+        JsonElement entries = export.RootElement.GetProperty("entries");
+        if (entries.GetArrayLength() < earlier.Size)
+        {
+            return new Verification(false, $"{earlier.Size} entries were signed at {earlier.At:u}; the export has {entries.GetArrayLength()}: entries were removed.");
+        }
+
+        var frontier = new MerkleFrontier();
+        foreach (JsonElement entry in entries.EnumerateArray().Take((int)earlier.Size))
+        {
+            frontier.Append(MerkleTree.LeafHash(CanonicalJson.Of(entry)));
+        }
+
+        return frontier.Root().AsSpan().SequenceEqual(earlier.Root)
+            ? new Verification(true, whole.Message + string.Create(CultureInfo.InvariantCulture, $" They begin with the {earlier.Size} signed at {earlier.At:yyyy-MM-dd HH:mm:ss} UTC."))
+            : new Verification(false, $"The first {earlier.Size} entries are not those signed at {earlier.At:u}: the log was rewritten.");
+    }
+
     /// <summary>Checks an export against the site's public key.</summary>
     public static Verification Verify(ReadOnlyMemory<byte> file, ECDsa publicKey)
     {

@@ -1,6 +1,7 @@
 using Microsoft.AspNetCore.Identity;
 using Microsoft.AspNetCore.Identity.EntityFrameworkCore;
 using Microsoft.EntityFrameworkCore;
+using Qc.Evidence;
 using Qc.Records.Audit;
 using Qc.Records.Lots;
 using Qc.Records.People;
@@ -12,6 +13,8 @@ namespace Qc.Records;
 /// <summary>The store of record. Tables and constraints are in Schema/*.sql; this maps them.</summary>
 public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : IdentityDbContext<Person, IdentityRole, string>(options)
 {
+    private readonly List<(Guid Transaction, RecordReference Record)> _written = [];
+
     /// <summary>Products.</summary>
     public DbSet<Product> Products => Set<Product>();
 
@@ -69,6 +72,25 @@ public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : Identit
     /// <summary>Options for a connection string, with the naming that the schema uses.</summary>
     public static void Configure(DbContextOptionsBuilder builder, string connectionString) =>
         builder.UseNpgsql(connectionString).UseSnakeCaseNamingConvention();
+
+    /// <inheritdoc/>
+    public override async Task<int> SaveChangesAsync(bool acceptAllChangesOnSuccess, CancellationToken cancellationToken = default)
+    {
+        object[] added = [.. ChangeTracker.Entries().Where(e => e.State == EntityState.Added && RecordHash.IsRecord(e.Metadata)).Select(e => e.Entity)];
+        int count = await base.SaveChangesAsync(acceptAllChangesOnSuccess, cancellationToken);
+        Guid transaction = Database.CurrentTransaction?.TransactionId ?? Guid.Empty;
+        _written.AddRange(added.Select(row => (transaction, RecordHash.Of(Model.FindEntityType(row.GetType())!, row))));
+        return count;
+    }
+
+    /// <summary>Hashes of the rows that the open transaction wrote since this was last asked.</summary>
+    internal IReadOnlyList<RecordReference> TakeWritten()
+    {
+        Guid transaction = Database.CurrentTransaction!.TransactionId;
+        RecordReference[] taken = [.. _written.Where(w => w.Transaction == transaction).Select(w => w.Record)];
+        _written.Clear();
+        return taken;
+    }
 
     /// <inheritdoc/>
     protected override void OnModelCreating(ModelBuilder builder)

@@ -1,11 +1,11 @@
 using BenchmarkDotNet.Running;
 using Qc.Benchmarks;
 
-// "report lines" and the like print statistics; anything else is for the benchmark runner, e.g. "--filter *Spin*".
-if (args is ["report", var subject, .. var rest])
+// Run with "-c Release -- --filter *Spin*", or "-c Release -- audit"; without arguments it lists what there is.
+if (args is ["audit"])
 {
-    return Reports.Print(subject, rest);
+    await AuditRate.RunAsync();
+    return;
 }
 
 BenchmarkSwitcher.FromAssembly(typeof(Program).Assembly).Run(args);
-return 0;

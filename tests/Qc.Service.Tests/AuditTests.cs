@@ -39,6 +39,29 @@ public sealed class AuditTests(ServiceFixture service)
         Assert.False(AuditExport.Verify(export, key).IsValid);
     }
 
+    [Fact]
+    public async Task The_whole_database_agrees_with_its_log_until_a_row_is_changed_past_the_triggers()
+    {
+        string product = await Plant.ProductAsync(service, specification: new { releaseByException = true });
+        JsonNode lot = await Plant.CheckedLotAsync(service, product, "ethyl acetate");
+        HttpClient auditor = await service.AsAsync(ServiceFixture.Auditor);
+        await (await auditor.GetAsync("/api/v1/audit/head")).JsonAsync();
+        JsonNode whole = await (await auditor.GetAsync("/api/v1/audit/check")).JsonAsync();
+        Assert.Empty(whole["findings"]!.AsArray());
+        Assert.True((long)whole["records"]! >= 10);
+
+        string change = $"UPDATE qc.computations SET duration_milliseconds = duration_milliseconds {{0}} 1 WHERE lot_id = '{(string)lot["id"]!}'";
+        const string Off = "ALTER TABLE qc.computations DISABLE TRIGGER refuse_change; ";
+        const string On = "; ALTER TABLE qc.computations ENABLE ALWAYS TRIGGER refuse_change";
+        object? exact = await service.SqlAsync($"SELECT duration_milliseconds FROM qc.computations WHERE lot_id = '{(string)lot["id"]!}'");
+        await service.SqlAsync(Off + string.Format(System.Globalization.CultureInfo.InvariantCulture, change, "+") + On);
+        JsonNode found = await (await auditor.GetAsync("/api/v1/audit/check")).JsonAsync();
+        Assert.Contains("computations was changed", (string?)Assert.Single(found["findings"]!.AsArray()), StringComparison.Ordinal);
+        await service.SqlAsync(string.Create(
+            System.Globalization.CultureInfo.InvariantCulture, $"{Off}UPDATE qc.computations SET duration_milliseconds = {exact:R} WHERE lot_id = '{(string)lot["id"]!}'{On}"));
+        Assert.Empty((await (await auditor.GetAsync("/api/v1/audit/check")).JsonAsync())["findings"]!.AsArray());
+    }
+
     [Theory]
     [InlineData("/api/v1/audit/consistency?from=0", 400, "malformed")]
     [InlineData("/api/v1/audit/consistency?from=2&to=1", 400, "malformed")]

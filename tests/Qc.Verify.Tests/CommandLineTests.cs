@@ -33,6 +33,20 @@ public sealed class CommandLineTests : IDisposable
     }
 
     [Fact]
+    public void A_log_that_does_not_begin_with_what_was_signed_earlier_is_refused()
+    {
+        string pem = Write("key.pem", Encoding.ASCII.GetBytes(key.ExportSubjectPublicKeyInfoPem()));
+        string log = Write("log.json", Log());
+        Assert.Equal(0, Run("log", log, "--key", pem, "--head", Kept(Head(MerkleTree.LeafHash(Entry().ToCanonicalBytes())))).Code);
+        Assert.Equal(1, Run("log", log, "--key", pem, "--head", Kept(Head(MerkleTree.LeafHash("another"u8)))).Code);
+        Assert.Equal(1, Run("log", log, "--key", pem, "--head", Kept(Head(MerkleTree.LeafHash("another"u8)) with { Size = 2 })).Code);
+        Assert.Equal(2, Run("log", log, "--key", pem, "--head", pem).Code);
+
+        string Kept(TreeHead head) => Write(
+            "certificate.json", System.Text.Json.JsonSerializer.SerializeToUtf8Bytes(new { auditHead = new { text = head.Text, signature = head.Sign(key) } }));
+    }
+
+    [Fact]
     public void A_proof_is_verified_and_refused_under_another_key()
     {
         byte[] leaf = MerkleTree.LeafHash(Entry().ToCanonicalBytes());

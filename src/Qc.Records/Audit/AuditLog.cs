@@ -39,33 +39,31 @@ public static class AuditLog
 
         await context.SaveChangesAsync(cancellation);
         (long size, DateTimeOffset now, Dictionary<(int, long), byte[]> nodes) = await context.BeginAppendAsync(cancellation);
+        IReadOnlyList<RecordReference>? records = context.TakeWritten();
+        await using DbBatch batch = context.Database.GetDbConnection().CreateBatch();
+        batch.Transaction = context.Database.CurrentTransaction!.GetDbTransaction();
         foreach (AuditDraft draft in drafts)
         {
             var entry = new AuditEntry(
-                size, now, draft.Actor, draft.Action, draft.SubjectType, draft.SubjectId, draft.Reason, draft.Before, draft.After);
+                size, now, draft.Actor, draft.Action, draft.SubjectType, draft.SubjectId, draft.Reason, draft.Before, draft.After, records);
+            records = null; // The first entry names them.
             byte[] content = entry.ToCanonicalBytes();
             byte[] leaf = MerkleTree.LeafHash(content);
-            context.AuditRows.Add(new AuditRow
-            {
-                Index = size,
-                At = now,
-                Actor = draft.Actor,
-                Action = draft.Action,
-                SubjectType = draft.SubjectType,
-                SubjectId = draft.SubjectId,
-                CanonicalJson = Encoding.UTF8.GetString(content),
-                LeafHash = leaf,
-            });
+            Add(
+                batch,
+                "INSERT INTO qc.audit_rows (index, at, actor, action, subject_type, subject_id, canonical_json, leaf_hash) VALUES ($1, $2, $3, $4, $5, $6, $7, $8)",
+                size, now.UtcDateTime, draft.Actor, draft.Action, draft.SubjectType, draft.SubjectId, Encoding.UTF8.GetString(content), leaf);
             foreach ((int level, long index, byte[] hash) in MerkleTree.NodesFinishedBy(size, leaf, (l, i) => nodes[(l, i)]))
             {
                 nodes[(level, index)] = hash;
-                context.MerkleNodes.Add(new MerkleNode { Level = level, Index = index, Hash = hash });
+                Add(batch, "INSERT INTO qc.merkle_nodes (level, index, hash) VALUES ($1, $2, $3)", level, index, hash);
             }
 
             size++;
         }
 
-        await context.SaveChangesAsync(cancellation);
+        // In one exchange, without change tracking: everybody else waits.
+        await batch.ExecuteNonQueryAsync(cancellation);
     }
 
     /// <summary>Number of entries.</summary>
@@ -90,6 +88,20 @@ public static class AuditLog
 
             return hash;
         };
+    }
+
+    private static void Add(DbBatch batch, string sql, params ReadOnlySpan<object> values)
+    {
+        DbBatchCommand command = batch.CreateBatchCommand();
+        command.CommandText = sql;
+        foreach (object value in values)
+        {
+            DbParameter parameter = command.CreateParameter();
+            parameter.Value = value;
+            command.Parameters.Add(parameter);
+        }
+
+        batch.BatchCommands.Add(command);
     }
 
     /// <summary>Waits for the other writers; size, time, and the complete subtrees that make up the log, by level and index.</summary>

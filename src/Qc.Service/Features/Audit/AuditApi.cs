@@ -36,6 +36,8 @@ internal static class AuditApi
         group.MapGet("/consistency", ConsistencyAsync).Produces<ProofDto>().WithProblems(400, 401, 403).WithSummary("Proof that an older head is a prefix of a newer one");
         group.MapGet("/export", ExportAsync).Produces(200, contentType: "application/json").WithProblems(401, 403)
             .WithSummary("The whole log in one file for qc-verify");
+        group.MapGet("/check", CheckAsync).Produces<StoreCheckResult>().WithProblems(401, 403)
+            .WithSummary("Checks every row of the database against the log, and the log against its signed heads");
         group.MapGet("/key", (SiteKeys keys) => Results.Text(keys.PublicKeyPem, "application/x-pem-file")).WithProblems(401, 403)
             .WithSummary("Public key of the log");
     }
@@ -97,6 +99,18 @@ internal static class AuditApi
         return Results.Ok(new ProofDto(
             null, from, size, null, Convert.ToHexStringLower(MerkleTree.Root(from, read)), Convert.ToHexStringLower(MerkleTree.Root(size, read)),
             [.. MerkleTree.ConsistencyProof(from, size, read).Select(Convert.ToHexStringLower)]));
+    }
+
+    private static async Task<IResult> CheckAsync(QcDbContext context, SiteKeys keys, ILogger<StoreCheckResult> logger, CancellationToken cancellation)
+    {
+        await using var oneState = await context.Database.BeginTransactionAsync(System.Data.IsolationLevel.RepeatableRead, cancellation);
+        StoreCheckResult result = await context.CheckStoreAsync(keys.LogKey, cancellation);
+        foreach (string finding in result.Findings)
+        {
+            logger.LogCritical("The store does not agree with its evidence: {Finding}", finding);
+        }
+
+        return Results.Ok(result);
     }
 
     private static async Task<IResult> ExportAsync(QcDbContext context, SignedHeads heads, CancellationToken cancellation)
