@@ -30,17 +30,7 @@ public sealed class DemoProcess : IDisposable
     /// <summary>Starts the demo and waits until it is ready.</summary>
     public static async Task<DemoProcess> StartAsync(string folder)
     {
-        string url = $"http://127.0.0.1:{FreePort()}";
-        var info = new ProcessStartInfo("dotnet", [ServiceAssembly(), "--demo", "--data", folder, "--urls", url])
-        {
-            RedirectStandardOutput = true, RedirectStandardError = true, UseShellExecute = false,
-        };
-        Process process = Process.Start(info)!;
-        var output = new System.Text.StringBuilder();
-        process.OutputDataReceived += (_, line) => { lock (output) { output.AppendLine(line.Data); } };
-        process.ErrorDataReceived += (_, line) => { lock (output) { output.AppendLine(line.Data); } };
-        process.BeginOutputReadLine();
-        process.BeginErrorReadLine();
+        (Process process, string url, Func<string> output) = Launch(folder);
         using var client = new HttpClient();
         var watch = Stopwatch.StartNew();
         while (watch.Elapsed < Limit && !process.HasExited)
@@ -61,10 +51,49 @@ public sealed class DemoProcess : IDisposable
         }
 
         process.Kill(entireProcessTree: true);
-        lock (output)
+        throw new InvalidOperationException($"The demo did not become ready:\n{output()}");
+    }
+
+    /// <summary>Starts the demo and kills it as a power cut would, once a log line says so.</summary>
+    public static async Task BreakOffAsync(string folder, string whenLogged)
+    {
+        (Process process, _, Func<string> output) = Launch(folder);
+        var watch = Stopwatch.StartNew();
+        while (!output().Contains(whenLogged, StringComparison.Ordinal) && watch.Elapsed < Limit && !process.HasExited)
         {
-            throw new InvalidOperationException($"The demo did not become ready:\n{output}");
+            await Task.Delay(50);
         }
+
+        bool reached = output().Contains(whenLogged, StringComparison.Ordinal);
+        process.Kill();
+        await process.WaitForExitAsync();
+        process.Dispose();
+        if (!reached)
+        {
+            throw new InvalidOperationException($"The demo never logged \"{whenLogged}\":\n{output()}");
+        }
+    }
+
+    private static (Process Process, string Url, Func<string> Output) Launch(string folder)
+    {
+        string url = $"http://127.0.0.1:{FreePort()}";
+        var info = new ProcessStartInfo("dotnet", [ServiceAssembly(), "--demo", "--data", folder, "--urls", url])
+        {
+            RedirectStandardOutput = true, RedirectStandardError = true, UseShellExecute = false,
+        };
+        Process process = Process.Start(info)!;
+        var output = new System.Text.StringBuilder();
+        process.OutputDataReceived += (_, line) => { lock (output) { output.AppendLine(line.Data); } };
+        process.ErrorDataReceived += (_, line) => { lock (output) { output.AppendLine(line.Data); } };
+        process.BeginOutputReadLine();
+        process.BeginErrorReadLine();
+        return (process, url, () =>
+        {
+            lock (output)
+            {
+                return output.ToString();
+            }
+        });
     }
 
     /// <summary>A client that carries the LIMS key.</summary>
@@ -114,12 +143,6 @@ public sealed class DemoProcess : IDisposable
     private static string ServiceAssembly()
     {
         string configuration = AppContext.BaseDirectory.Contains($"{Path.DirectorySeparatorChar}Release{Path.DirectorySeparatorChar}", StringComparison.Ordinal) ? "Release" : "Debug";
-        DirectoryInfo? folder = new(AppContext.BaseDirectory);
-        while (folder is not null && !File.Exists(Path.Combine(folder.FullName, "Qc.sln")))
-        {
-            folder = folder.Parent;
-        }
-
-        return Path.Combine(folder!.FullName, "src", "Qc.Service", "bin", configuration, "net10.0", "Qc.Service.dll");
+        return Path.Combine(Repository.Root, "src", "Qc.Service", "bin", configuration, "net10.0", "Qc.Service.dll");
     }
 }

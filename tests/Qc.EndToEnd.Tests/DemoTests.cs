@@ -2,46 +2,13 @@ using System.Net;
 using System.Net.Http.Json;
 using System.Text;
 using System.Text.Json.Nodes;
-using Microsoft.Playwright;
 using Xunit;
 
 namespace Qc.EndToEnd.Tests;
 
-/// <summary>One demo for all tests of this class.</summary>
-public sealed class DemoFixture : IAsyncLifetime
-{
-    private readonly string _folder = Path.Combine(Path.GetTempPath(), $"qc-demo-{Guid.NewGuid():n}");
-
-    public DemoProcess Service { get; private set; } = null!;
-
-    public async Task InitializeAsync() => Service = await DemoProcess.StartAsync(_folder);
-
-    /// <summary>Kills the service and starts it again on the same folder.</summary>
-    public async Task RestartAfterKillAsync()
-    {
-        Service.Kill();
-        Service.Dispose();
-        Service = await DemoProcess.StartAsync(_folder);
-    }
-
-    public Task DisposeAsync()
-    {
-        Service.Dispose();
-        try
-        {
-            Directory.Delete(_folder, recursive: true);
-        }
-        catch (IOException)
-        {
-            // The private database may still be closing its files; the folder is temporary.
-        }
-
-        return Task.CompletedTask;
-    }
-}
-
-/// <summary>The demo plant (invented substances and lots) from the first start to a signed certificate, over HTTP and in the browser.</summary>
-public class DemoTests(DemoFixture demo) : IClassFixture<DemoFixture>
+/// <summary>The demo plant (invented substances and lots) from the first start to a signed certificate, over HTTP.</summary>
+[Collection(DemoFixture.Name)]
+public class DemoTests(DemoFixture demo)
 {
     [Fact]
     public async Task Every_role_is_there_and_can_sign_in()
@@ -70,7 +37,7 @@ public class DemoTests(DemoFixture demo) : IClassFixture<DemoFixture>
     [InlineData("C-3003", "26-0395", "flag", "suitability.signalToNoise")] // too dilute
     public async Task Each_lot_gets_the_verdict_that_its_contents_deserve(string product, string lot, string verdict, string? flagged)
     {
-        JsonNode found = await LotAsync(product, lot);
+        JsonNode found = await demo.LotAsync(product, lot);
         Assert.Equal(verdict, (string?)found["verdict"]);
         if (flagged is not null)
         {
@@ -83,7 +50,7 @@ public class DemoTests(DemoFixture demo) : IClassFixture<DemoFixture>
     [Fact]
     public async Task A_broken_file_is_unreadable_with_its_line_and_label()
     {
-        JsonNode lot = await LotAsync("B-2010", "26-0389");
+        JsonNode lot = await demo.LotAsync("B-2010", "26-0389");
         Assert.Equal("unreadable", (string?)lot["state"]);
         JsonNode error = lot["spectra"]![0]!["error"]!;
         Assert.Equal("XYDATA", (string?)error["label"]);
@@ -93,7 +60,7 @@ public class DemoTests(DemoFixture demo) : IClassFixture<DemoFixture>
     [Fact]
     public async Task A_bad_shim_asks_for_another_measurement()
     {
-        JsonNode lot = await LotAsync("A-1077", "26-0431");
+        JsonNode lot = await demo.LotAsync("A-1077", "26-0431");
         Assert.True((bool)lot["unsuitable"]!);
         Assert.Contains("measure again", (string?)lot["summary"], StringComparison.Ordinal);
     }
@@ -101,7 +68,7 @@ public class DemoTests(DemoFixture demo) : IClassFixture<DemoFixture>
     [Fact]
     public async Task The_released_lot_has_a_certificate_and_its_entry_is_in_the_log()
     {
-        JsonNode lot = await LotAsync("A-1042", "26-0411");
+        JsonNode lot = await demo.LotAsync("A-1042", "26-0411");
         Assert.Equal("released", (string?)lot["state"]);
         using HttpClient lims = demo.Service.Lims();
         byte[] pdf = await lims.GetByteArrayAsync($"lots/{lot["id"]}/certificate");
@@ -131,33 +98,22 @@ public class DemoTests(DemoFixture demo) : IClassFixture<DemoFixture>
     }
 
     [Fact]
-    public async Task A_reviewer_signs_in_opens_a_flagged_lot_and_decides_on_the_page()
+    public async Task A_first_start_that_was_broken_off_goes_on_where_it_was()
     {
-        JsonNode lot = await LotAsync("C-3020", "26-0370");
-        JsonNode reviewer = demo.Service.Demo["people"]!.AsArray().First(p => p!["roles"]!.AsArray().Any(r => (string?)r == "reviewer"))!;
-        using IPlaywright playwright = await Playwright.CreateAsync();
-        await using IBrowser browser = await playwright.Chromium.LaunchAsync(new BrowserTypeLaunchOptions
+        string folder = Path.Combine(Path.GetTempPath(), $"qc-demo-{Guid.NewGuid():n}");
+        await DemoProcess.BreakOffAsync(folder, "of A-1042: checked");
+        Assert.False(File.Exists(Path.Combine(folder, "demo.json")));
+        using (DemoProcess again = await DemoProcess.StartAsync(folder))
         {
-            ExecutablePath = Environment.GetEnvironmentVariable("QC_CHROMIUM") ?? "/usr/bin/chromium",
-            Args = ["--no-sandbox", "--disable-gpu", "--disable-background-networking", "--disable-component-update", "--disable-sync", "--no-first-run"],
-        });
-        IPage page = await browser.NewPageAsync();
-        await page.GotoAsync($"{demo.Service.Url}/sign-in");
-        await page.FillAsync("input[name=user]", (string)reviewer["user"]!);
-        await page.FillAsync("input[name=password]", (string)reviewer["password"]!);
-        await page.Keyboard.PressAsync("Enter");
-        await page.WaitForURLAsync("**/waiting**");
-        await page.GotoAsync($"{demo.Service.Url}/lots/{lot["id"]}");
-        string text = await page.InnerTextAsync("main");
-        Assert.Contains("26-0370", text, StringComparison.Ordinal);
-        Assert.Contains("dimethyl fumarate", text, StringComparison.Ordinal);
-    }
+            using HttpClient lims = again.Lims();
+            string[] lots = [.. JsonNode.Parse(await lims.GetStringAsync("lots"))!["lots"]!.AsArray().Select(l => $"{l!["product"]} {l["lot"]}")];
+            Assert.Equal(lots.Distinct().Count(), lots.Length);
+            using HttpClient whole = demo.Service.Lims();
+            string[] demoLots = [.. JsonNode.Parse(await whole.GetStringAsync("lots"))!["lots"]!.AsArray().Select(l => $"{l!["product"]} {l["lot"]}")];
+            Assert.Empty(lots.Except(demoLots));
+            Assert.True(lots.Length >= 12, $"Only {lots.Length} lots were loaded.");
+        }
 
-    private async Task<JsonNode> LotAsync(string product, string number)
-    {
-        using HttpClient lims = demo.Service.Lims();
-        JsonNode list = JsonNode.Parse(await lims.GetStringAsync($"lots?product={product}"))!;
-        JsonNode item = list["lots"]!.AsArray().Single(l => (string?)l!["lot"] == number)!;
-        return JsonNode.Parse(await lims.GetStringAsync($"lots/{item["id"]}"))!;
+        Directory.Delete(folder, recursive: true);
     }
 }

@@ -20,7 +20,7 @@ const signed = (value: number, decimals: number): string => value.toFixed(decima
 /** The spectrum of a lot: measured, modelled and left-over curve on one zoomable canvas. */
 export function mountPlot(figure: HTMLElement): Plot {
   const lot = figure.dataset["lot"]!;
-  const spectrum = figure.dataset["spectrum"]!;
+  let spectrum = figure.dataset["spectrum"]!;
   const stage = figure.querySelector<HTMLElement>("[data-stage]")!;
   const status = figure.querySelector<HTMLElement>("[data-status]")!;
 
@@ -241,6 +241,12 @@ export function mountPlot(figure: HTMLElement): Plot {
   for (const button of figure.querySelectorAll<HTMLButtonElement>("button[data-plot]")) {
     button.addEventListener("click", () => actions[button.dataset["plot"]!]?.());
   }
+  const choice = figure.querySelector<HTMLSelectElement>("[data-plot-spectrum]");
+  choice?.addEventListener("change", () => {
+    spectrum = choice.value;
+    height = 1;
+    void load(null);
+  });
   new ResizeObserver(() => chart?.setSize({ width: stage.clientWidth, height: plotHeight() })).observe(stage);
   for (const query of ["(prefers-color-scheme: dark)", "print"]) {
     matchMedia(query).addEventListener("change", () => chart?.redraw(false, true));

@@ -13,11 +13,16 @@ namespace Qc.Service.Demo;
 
 /// <summary>
 /// Loads the demo plant by posting it through the public API, as a LIMS and people would, and writes demo.json. A second
-/// start finds the plant and only renews the address. Only the first administrator is made inside, since nobody exists before.
+/// start finds the plant and only renews the address. Passwords are kept in a file of their own until all is loaded, so that
+/// a start that was broken off goes on where it was. Only the first administrator is made inside, since nobody exists before.
 /// </summary>
 internal static class DemoLoader
 {
     private const string FileName = "demo.json";
+    private const string UnfinishedFileName = "demo.unfinished.json";
+
+    /// <summary>Where the LIMS key stands among the passwords of an unfinished start; no user has such a name.</summary>
+    private const string LimsKey = "LIMS key";
 
     public static async Task LoadAsync(WebApplication app, QcOptions options, CancellationToken cancellation)
     {
@@ -32,10 +37,23 @@ internal static class DemoLoader
             return;
         }
 
-        var passwords = DemoPlant.People.ToDictionary(p => p.User, _ => Password());
-        await MakeAdministratorAsync(app.Services, passwords, cancellation);
+        string unfinished = Path.Combine(options.DataFolder, UnfinishedFileName);
+        bool goesOn = File.Exists(unfinished);
+        Dictionary<string, string> passwords = goesOn
+            ? JsonSerializer.Deserialize<Dictionary<string, string>>(await File.ReadAllTextAsync(unfinished, cancellation))!
+            : DemoPlant.People.ToDictionary(p => p.User, _ => Password());
+        SecretFile.Write(unfinished, JsonSerializer.Serialize(passwords));
+        await MakeAdministratorAsync(app.Services, passwords, goesOn, cancellation);
         app.Logger.LogInformation("Loading the demo plant: {People} people, {Products} products, {Lots} lots", DemoPlant.People.Count, DemoPlant.Products.Count, DemoPlant.Lots.Count);
-        string key = await LoadPeopleAsync(url, passwords, cancellation);
+        await LoadPeopleAsync(url, passwords, cancellation);
+        if (!passwords.TryGetValue(LimsKey, out string? key))
+        {
+            // The lots are posted with one key only: what a broken-off start posted is then known as posted.
+            key = await MakeKeyAsync(url, passwords, cancellation);
+            passwords[LimsKey] = key;
+            SecretFile.Write(unfinished, JsonSerializer.Serialize(passwords));
+        }
+
         await LoadProductsAsync(url, passwords, cancellation);
         await LoadLotsAsync(url, passwords, key, app.Logger, cancellation);
         var demo = new JsonObject
@@ -54,6 +72,7 @@ internal static class DemoLoader
             ["limsKey"] = key,
         };
         SecretFile.Write(file, demo.ToJsonString(new JsonSerializerOptions { WriteIndented = true }));
+        File.Delete(unfinished);
         Announce(demo, file);
     }
 
@@ -70,7 +89,7 @@ internal static class DemoLoader
 
     private static string Password() => Convert.ToHexStringLower(RandomNumberGenerator.GetBytes(10));
 
-    private static async Task MakeAdministratorAsync(IServiceProvider services, Dictionary<string, string> passwords, CancellationToken cancellation)
+    private static async Task MakeAdministratorAsync(IServiceProvider services, Dictionary<string, string> passwords, bool goesOn, CancellationToken cancellation)
     {
         await using AsyncServiceScope scope = services.CreateAsyncScope();
         ManagePeople people = scope.ServiceProvider.GetRequiredService<ManagePeople>();
@@ -82,23 +101,28 @@ internal static class DemoLoader
             },
             "service",
             cancellation);
-        if (made.Problem is { } problem)
+        bool wasMadeBefore = goesOn && made.Problem?.Status == StatusCodes.Status409Conflict;
+        if (made.Problem is { } problem && !wasMadeBefore)
         {
             throw new InvalidOperationException(
                 $"The demo cannot be loaded into this data folder ({problem.Detail}); use an empty folder, or start without --demo.");
         }
     }
 
-    private static async Task<string> LoadPeopleAsync(string url, Dictionary<string, string> passwords, CancellationToken cancellation)
+    private static async Task LoadPeopleAsync(string url, Dictionary<string, string> passwords, CancellationToken cancellation)
     {
         DemoPerson administrator = DemoPlant.People.First(p => p.Roles.Contains(Roles.Administrator));
         using HttpClient client = await SignInAsync(url, administrator.User, passwords, cancellation);
         foreach (DemoPerson person in DemoPlant.People.Where(p => p != administrator))
         {
-            await PostAsync(
+            await PostOnceAsync(
                 client, "people", new { user = person.User, printedName = person.PrintedName, password = passwords[person.User], roles = person.Roles }, cancellation);
         }
+    }
 
+    private static async Task<string> MakeKeyAsync(string url, Dictionary<string, string> passwords, CancellationToken cancellation)
+    {
+        using HttpClient client = await SignInAsync(url, Holder(Roles.Administrator), passwords, cancellation);
         JsonNode key = await PostAsync(client, "keys", new { name = "LIMS", scopes = new[] { "lots:write", "lots:read", "products:read" } }, cancellation);
         return (string)key["key"]!;
     }
@@ -109,12 +133,23 @@ internal static class DemoLoader
         using HttpClient quality = await SignInAsync(url, Holder(Roles.QualityUnit), passwords, cancellation);
         foreach (DemoProduct product in DemoPlant.Products)
         {
-            await PostAsync(
+            await PostOnceAsync(
                 owner,
                 "products",
                 new { code = product.Code, name = product.Name, structure = new { smiles = product.Smiles }, solvent = product.Solvent, nucleus = "1H" },
                 cancellation);
-            await PostAsync(owner, $"products/{product.Code}/specifications", product.Specification, cancellation);
+            JsonArray versions = JsonNode.Parse(await owner.GetStringAsync($"products/{product.Code}/specifications", cancellation))!.AsArray();
+            if (versions.Any(v => (string?)v!["state"] == "approved"))
+            {
+                continue;
+            }
+
+            // A draft without approval was left by a start that was broken off.
+            if (versions.Count == 0)
+            {
+                await PostAsync(owner, $"products/{product.Code}/specifications", product.Specification, cancellation);
+            }
+
             await PostAsync(
                 quality, $"products/{product.Code}/specifications/1/approve", new { password = passwords[Holder(Roles.QualityUnit)] }, cancellation);
         }
@@ -128,6 +163,9 @@ internal static class DemoLoader
         using HttpClient reviewer = await SignInAsync(url, Holder(Roles.Reviewer), passwords, cancellation);
         foreach (DemoLot lot in DemoPlant.Lots)
         {
+            // The key of the repeat makes a start that goes on find the lots it had posted.
+            lims.DefaultRequestHeaders.Remove("Idempotency-Key");
+            lims.DefaultRequestHeaders.Add("Idempotency-Key", $"demo {lot.Product} {lot.Lot}");
             JsonNode answer = await PostAsync(
                 lims,
                 "lots",
@@ -144,7 +182,7 @@ internal static class DemoLoader
             if (lot.Decision is { } decision)
             {
                 string reason = decision == "release" ? "All findings pass; the spectrum is that of the product." : "The spectrum is that of another ester.";
-                await PostAsync(
+                await PostOnceAsync(
                     reviewer, $"lots/{answer["id"]}/reviews", new { decision, reason, password = passwords[Holder(Roles.Reviewer)] }, cancellation);
             }
         }
@@ -163,6 +201,17 @@ internal static class DemoLoader
         HttpClient client = Client(url);
         await PostAsync(client, "session", new { user, password = passwords[user] }, cancellation);
         return client;
+    }
+
+    /// <summary>Posts what an earlier start may have posted already.</summary>
+    private static async Task PostOnceAsync(HttpClient client, string path, object body, CancellationToken cancellation)
+    {
+        using HttpResponseMessage response = await client.PostAsJsonAsync(path, body, Json.Options, cancellation);
+        if (!response.IsSuccessStatusCode && response.StatusCode != HttpStatusCode.Conflict)
+        {
+            throw new InvalidOperationException(
+                $"The demo could not be loaded: POST {path} answered {(int)response.StatusCode}: {await response.Content.ReadAsStringAsync(cancellation)}");
+        }
     }
 
     private static async Task<JsonNode> PostAsync(HttpClient client, string path, object body, CancellationToken cancellation)

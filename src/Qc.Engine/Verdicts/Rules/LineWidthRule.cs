@@ -1,6 +1,10 @@
 namespace Qc.Engine.Verdicts.Rules;
 
-/// <summary>suitability.lineWidth: the width at half height of the lines that stand clear; a wide one means a poor shim.</summary>
+/// <summary>
+/// suitability.lineWidth: the width at half height of the lines that stand clear; a wide one means a poor shim. The width
+/// is rounded to a tenth of a hertz, the place to which the limit is stated, and then compared (rounding rule of the USP
+/// General Notices 7.20, from memory).
+/// </summary>
 internal static class LineWidthRule
 {
     public const string Id = "suitability.lineWidth";
@@ -12,7 +16,7 @@ internal static class LineWidthRule
         bool lowField = judged.Spectrum.FrequencyMHz < LowFieldMHz - 5;
         double limit = lowField ? judged.Criteria.Suitability.LineWidthLowFieldHertz : judged.Criteria.Suitability.LineWidthHertz;
         double width = judged.Fit.MeasuredWidthHertz;
-        bool passes = width <= limit;
+        bool passes = Math.Round(width, 1, MidpointRounding.AwayFromZero) <= limit;
         yield return new Finding(
             Id,
             judged.Name,

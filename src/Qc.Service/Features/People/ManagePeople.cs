@@ -74,6 +74,11 @@ public sealed class ManagePeople(UserManager<Person> people, RoleManager<Identit
         if (!created.Succeeded)
         {
             IdentityError error = created.Errors.First();
+            if (error.Code == nameof(IdentityErrorDescriber.DuplicateUserName))
+            {
+                return Problem.Conflict("user-exists", "There is such a user", error.Description);
+            }
+
             string pointer = error.Code.Contains("Password", StringComparison.Ordinal) ? "/password" : "/user";
             return Problem.InvalidField(pointer, error.Description);
         }
