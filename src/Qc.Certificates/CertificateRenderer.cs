@@ -184,6 +184,17 @@ public static class CertificateRenderer
             + "The audit log of the laboratory can be checked against the head below without its service.",
             CertificateFonts.Regular(9));
         sheet.Y += 3;
+        double top = sheet.Y;
+        double width = Sheet.Width;
+        if (content.VerificationUrl is { } address)
+        {
+            sheet.Need(QrDrawing.Side);
+            top = sheet.Y;
+            QrDrawing.Draw(sheet.Graphics, address, Sheet.Margin + Sheet.Width - QrDrawing.Side, top);
+            width -= QrDrawing.Side + 8;
+        }
+
+        int page = sheet.Page;
         sheet.Fields(
             [
                 ("Audit log", Text($"{content.AuditHead.Size} entries at {Time(content.AuditHead.At)}")),
@@ -193,7 +204,12 @@ public static class CertificateRenderer
                 ("Attachment, SHA-256", CertificateFile.AttachmentSha256(content)),
                 ("Made by", $"Qc {content.ServiceVersion}, engine {content.EngineVersion}"),
                 .. content.VerificationUrl is { } url ? [("State of the certificate", url)] : Array.Empty<(string, string)>(),
-            ]);
+            ],
+            width);
+        if (content.VerificationUrl is not null && sheet.Page == page)
+        {
+            sheet.Y = Math.Max(sheet.Y, top + QrDrawing.Side);
+        }
     }
 
     private static void CheckTrace(CertificateTrace? trace)

@@ -1,5 +1,6 @@
 using System.Globalization;
 using System.Text;
+using System.Text.RegularExpressions;
 using PdfSharp;
 using PdfSharp.Drawing;
 using PdfSharp.Pdf;
@@ -15,7 +16,7 @@ internal sealed record Column(string Title, double Share);
 /// A4 pages filled from top to bottom. Lengths in points (1/72 inch). Whatever is too long for a line is wrapped, whatever
 /// is too long for a page goes on over the next: no text is cut off or drawn over another.
 /// </summary>
-internal sealed class Sheet(PdfDocument document)
+internal sealed partial class Sheet(PdfDocument document)
 {
     /// <summary>Left and right margin.</summary>
     public const double Margin = 50;
@@ -32,6 +33,9 @@ internal sealed class Sheet(PdfDocument document)
 
     /// <summary>Where the next thing goes.</summary>
     public double Y { get; set; }
+
+    /// <summary>Number of the page being drawn on, from 1.</summary>
+    public int Page => document.PageCount;
 
     /// <summary>The page being drawn on.</summary>
     public XGraphics Graphics => graphics ?? throw new InvalidOperationException("No page was begun.");
@@ -165,21 +169,42 @@ internal sealed class Sheet(PdfDocument document)
                 continue;
             }
 
-            foreach (Rune rune in word.EnumerateRunes())
+            foreach (string piece in Breaks().Split(word))
             {
-                if (line.Length > 0 && Measure(line + rune.ToString(), font) > width)
+                if (Measure(line + piece, font) <= width)
                 {
-                    lines.Add(line.ToString());
-                    line.Clear();
+                    line.Append(piece);
                 }
-
-                line.Append(rune.ToString());
+                else
+                {
+                    Break(piece, font, width, lines, line);
+                }
             }
         }
 
         lines.Add(line.ToString());
         return [.. lines];
     }
+
+    /// <summary>A piece that does not fit goes on a line of its own; one that fits on none is broken anywhere.</summary>
+    private void Break(string piece, XFont font, double width, List<string> lines, StringBuilder line)
+    {
+        bool fitsAlone = Measure(piece, font) <= width;
+        foreach (string part in fitsAlone ? [piece] : piece.EnumerateRunes().Select(r => r.ToString()))
+        {
+            if (line.Length > 0 && Measure(line + part, font) > width)
+            {
+                lines.Add(line.ToString());
+                line.Clear();
+            }
+
+            line.Append(part);
+        }
+    }
+
+    /// <summary>Where a long word may be broken: after a dot, stroke or hyphen, and before a capital within a name.</summary>
+    [GeneratedRegex("(?<=[./_-])(?=.)|(?<=[a-z])(?=[A-Z])")]
+    private static partial Regex Breaks();
 
     private void Titles(IReadOnlyList<Column> columns, double[] widths)
     {

@@ -66,6 +66,39 @@ public sealed class OutsideToolsTests
         }
     }
 
+    [Theory]
+    [InlineData("identity.unaccountedSignalInOneRegion", 60)]
+    [InlineData("residual-solvent/dichloromethane", 70)]
+    public void A_long_name_is_broken_where_its_words_end(string name, double width)
+    {
+        using var document = new PdfSharp.Pdf.PdfDocument();
+        var sheet = new Sheet(document);
+        sheet.Need(10);
+        string[] lines = sheet.Wrap(name, CertificateFonts.Regular(8), width);
+        Assert.Equal(name, string.Concat(lines));
+        Assert.True(lines.Length > 1);
+        Assert.All(lines.Skip(1), line => Assert.True(char.IsUpper(line[0]) || name[name.IndexOf(line, StringComparison.Ordinal) - 1] is '.' or '-' or '/', line));
+    }
+
+    [Fact]
+    public void The_QR_code_is_a_square_with_three_finders_in_a_quiet_zone()
+    {
+        bool[][] modules = QrDrawing.Modules("https://qc.example/verify?number=QC-2026-000017");
+        int n = modules.Length;
+        Assert.All(modules, row => Assert.Equal(n, row.Length));
+        Assert.Equal(0, (n - 8 - 17) % 4); // 17 + 4 * version, and four light modules on each side.
+        for (int i = 0; i < n; i++)
+        {
+            Assert.False(modules[3][i] || modules[i][3] || modules[n - 4][i] || modules[i][n - 4]);
+        }
+
+        foreach ((int row, int column) in new[] { (4, 4), (4, n - 11), (n - 11, 4) })
+        {
+            bool[] middle = modules[row + 3][column..(column + 7)];
+            Assert.Equal([true, false, true, true, true, false, true], middle);
+        }
+    }
+
     private static int Count(string text, string part) => text.Split(part).Length - 1;
 
     private static void EveryObjectIsWhereTheTableSays(string pdf)

@@ -106,7 +106,8 @@ public static class QcHost
         services.AddDbContextWithWolverineIntegration<QcDbContext>(b => QcDbContext.Configure(b, application), "queue");
         services.AddScoped<CreateProduct>().AddScoped<ReadProduct>().AddScoped<DraftSpecification>().AddScoped<ApproveSpecification>()
             .AddScoped<SubmitLot>().AddScoped<ReadLots>().AddScoped<LotChecker>().AddScoped<DecideLot>().AddScoped<IssueCertificate>()
-            .AddScoped<SignedHeads>().AddScoped<ManagePeople>().AddScoped<SigningDesk>();
+            .AddScoped<SignedHeads>().AddScoped<ManagePeople>().AddScoped<SigningDesk>().AddScoped<EndCertificate>();
+        services.AddHostedService<IssueDueCertificates>();
         services.AddIdentity<Person, IdentityRole>(identity =>
             {
                 // NIST SP 800-63B: length, no composition rules.
@@ -201,6 +202,7 @@ public static class QcHost
         api.MapLots();
         api.MapReviews();
         api.MapCertificates();
+        api.MapVerify();
         api.MapAudit();
         api.MapPeople();
         app.MapQcPages();

@@ -24,6 +24,9 @@ public sealed record QcOptions
     /// <summary>Name of the site on tree heads and certificates.</summary>
     public string Site { get; init; } = "Qc site";
 
+    /// <summary>Address under which others reach this service, without a stroke at its end; printed on certificates.</summary>
+    public string? PublicUrl { get; init; }
+
     /// <summary>Largest request body in bytes.</summary>
     public long LargestBodyBytes { get; init; } = 100L * 1024 * 1024;
 
@@ -39,6 +42,7 @@ public sealed record QcOptions
         ApplicationConnection = configuration.GetConnectionString("Application") ?? FromFile(configuration["Qc:ApplicationConnectionFile"]),
         RabbitMq = configuration["Qc:RabbitMq"],
         Site = configuration["Qc:Site"] ?? (args.Contains(DemoSwitch, StringComparer.Ordinal) ? Qc.Service.Demo.DemoPlant.Site : "Qc site"),
+        PublicUrl = (configuration["Qc:PublicUrl"] ?? configuration["urls"]?.Split(';')[0])?.TrimEnd('/'),
         CallbacksToThisHost = configuration.GetValue<bool?>("Qc:CallbacksToThisHost") ?? configuration.GetConnectionString("Application") is null,
         LargestBodyBytes = configuration.GetValue<long?>("Qc:LargestBodyBytes") ?? 100L * 1024 * 1024,
     };

@@ -24,6 +24,9 @@ public static class Policies
     /// <summary>Decides on lots.</summary>
     public const string Review = "review";
 
+    /// <summary>Withdraws certificates and has them replaced.</summary>
+    public const string EndCertificates = "end-certificates";
+
     /// <summary>Reads the audit log.</summary>
     public const string Audit = "audit";
 
@@ -42,6 +45,7 @@ public static class Policies
         Add(options, ManageProducts, [Roles.MethodOwner], ["products:write"]);
         Add(options, ApproveSpecifications, [Roles.QualityUnit], []);
         Add(options, Review, [Roles.Reviewer], []);
+        Add(options, EndCertificates, [Roles.QualityUnit], []);
         Add(options, Audit, [Roles.Auditor, Roles.QualityUnit, Roles.Administrator], ["audit:read"]);
         Add(options, Administer, [Roles.Administrator], []);
     }

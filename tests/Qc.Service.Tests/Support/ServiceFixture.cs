@@ -36,6 +36,9 @@ public sealed class ServiceFixture : IAsyncLifetime
     /// <summary>A key with every scope of a LIMS.</summary>
     public HttpClient Lims { get; private set; } = null!;
 
+    /// <summary>Data folder of the service.</summary>
+    public string Folder => _folder;
+
     /// <summary>Everything the service printed.</summary>
     public string Log { get; private set; } = "";
 
@@ -161,6 +164,7 @@ public sealed class ServiceFixture : IAsyncLifetime
         start.Environment["QC_ADMIN_PASSWORD_FILE"] = _passwordFile;
         start.Environment["Qc__LargestBodyBytes"] = LargestBodyBytes.ToString(System.Globalization.CultureInfo.InvariantCulture);
         start.Environment["Qc__CallbacksToThisHost"] = "true";
+        start.Environment["Qc__CertificateRetrySeconds"] = "1";
         _service = Process.Start(start)!;
         _service.OutputDataReceived += Keep;
         _service.ErrorDataReceived += Keep;

@@ -13,9 +13,12 @@ namespace Qc.Service.Features.Certificates;
 /// <summary>From records to what a certificate prints and carries: every number comes from the stored report.</summary>
 internal static class CertificateMapping
 {
-    public static string Json(Facts facts, string number, DateTimeOffset issuedAt, SignedHead head, QcOptions options) => new JsonObject
+    public static string Json(
+        Facts facts, string number, int version, string? supersedes, DateTimeOffset issuedAt, SignedHead head, QcOptions options) => new JsonObject
     {
         ["number"] = number,
+        ["version"] = version,
+        ["supersedes"] = supersedes,
         ["issuedAt"] = issuedAt.UtcDateTime.ToString("yyyy-MM-ddTHH:mm:ss.ffffffZ", CultureInfo.InvariantCulture),
         ["laboratory"] = options.Site,
         ["product"] = new JsonObject
@@ -45,13 +48,14 @@ internal static class CertificateMapping
     }.ToJsonString(new JsonSerializerOptions { WriteIndented = true });
 
     public static CertificateContent Content(
-        Facts facts, string number, int version, DateTimeOffset issuedAt, SignedHead head, QcOptions options, string json)
+        Facts facts, string number, int version, string? supersedes, DateTimeOffset issuedAt, SignedHead head, QcOptions options, string json)
     {
         CheckReport report = facts.Report;
         return new CertificateContent
         {
             Number = number,
             Version = version,
+            SupersedesNumber = supersedes,
             IssuedAt = issuedAt,
             Laboratory = options.Site,
             Product = new CertifiedProduct(
@@ -79,6 +83,7 @@ internal static class CertificateMapping
             Spectra = [.. facts.Spectra],
             ServiceVersion = typeof(CertificateMapping).Assembly.GetName().Version?.ToString(3) ?? "0",
             EngineVersion = report.EngineVersion,
+            VerificationUrl = options.PublicUrl is { } site ? $"{site}/verify?number={number}" : null,
             MachineReadableJson = json,
         };
     }

@@ -46,8 +46,11 @@ public sealed class IssueCertificate(
         }
     }
 
-    /// <summary>Issues the certificate of a lot that may be released; a problem says why not.</summary>
-    public async Task<Problem?> IssueAsync(string lotId, string actor, CancellationToken cancellation)
+    /// <summary>
+    /// Issues the certificate of a lot that may be released; a problem says why not. Where the lot has one and none is to be
+    /// superseded, nothing is done: two attempts at once issue one.
+    /// </summary>
+    public async Task<Problem?> IssueAsync(string lotId, string actor, CancellationToken cancellation, string? supersedes = null)
     {
         context.ChangeTracker.Clear();
         Facts facts = await FactsAsync(lotId, cancellation);
@@ -61,11 +64,19 @@ public sealed class IssueCertificate(
         SignedHead head = await heads.TakeAsync(cancellation);
         await using var transaction = await context.Database.BeginTransactionAsync(cancellation);
         CertificateNumber taken = await context.NextCertificateNumberAsync(cancellation);
+        bool done = supersedes is null
+            ? await context.Certificates.AnyAsync(c => c.LotId == lotId, cancellation)
+            : await context.Certificates.AnyAsync(c => c.SupersedesNumber == supersedes, cancellation);
+        if (done)
+        {
+            return null;
+        }
+
         string number = taken.ToString();
         DateTimeOffset now = await context.DatabaseTimeAsync(cancellation);
         int version = 1 + (await context.Certificates.Where(c => c.LotId == lotId).MaxAsync(c => (int?)c.Version, cancellation) ?? 0);
-        string json = CertificateMapping.Json(facts, number, now, head, options);
-        CertificateContent content = CertificateMapping.Content(facts, number, version, now, head, options, json);
+        string json = CertificateMapping.Json(facts, number, version, supersedes, now, head, options);
+        CertificateContent content = CertificateMapping.Content(facts, number, version, supersedes, now, head, options, json);
         byte[] pdf = site.Signer.Sign(CertificateRenderer.Render(content, token));
         context.Certificates.Add(new Certificate
         {
@@ -74,6 +85,7 @@ public sealed class IssueCertificate(
             Serial = taken.Serial,
             LotId = lotId,
             Version = version,
+            SupersedesNumber = supersedes,
             Json = json,
             Pdf = pdf,
             PdfSha256 = Convert.ToHexStringLower(SHA256.HashData(pdf)),
@@ -85,6 +97,7 @@ public sealed class IssueCertificate(
                 new AuditDraft(actor, "certificate.issued", "lot", lotId, After: new JsonObject
                 {
                     ["number"] = number,
+                    ["supersedes"] = supersedes,
                     ["pdfSha256"] = Convert.ToHexStringLower(SHA256.HashData(pdf)),
                 }),
             ],

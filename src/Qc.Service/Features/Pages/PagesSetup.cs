@@ -18,6 +18,7 @@ public static class PagesSetup
                 options.Conventions.AuthorizeFolder("/Pages", Policies.Read);
                 options.Conventions.AllowAnonymousToPage("/Pages/SignIn");
                 options.Conventions.AllowAnonymousToPage("/Pages/SetUp");
+                options.Conventions.AllowAnonymousToPage("/Pages/Verify");
             })
             .AddMvcOptions(mvc => mvc.Filters.Add(new PageHeaders()));
         return builder;

@@ -53,7 +53,8 @@ public sealed record FindingDecision
 
 /// <summary>Records a person's signed decision on a lot.</summary>
 public sealed class DecideLot(
-    QcDbContext context, IDbContextOutbox<QcDbContext> outbox, ReadLots lots, SigningDesk desk, IssueCertificate certificates)
+    QcDbContext context, IDbContextOutbox<QcDbContext> outbox, ReadLots lots, SigningDesk desk, IssueCertificate certificates,
+    ILogger<DecideLot> logger)
 {
     private static readonly string[] Decisions = ["release", "reject", "remeasure"];
     private static readonly string[] Decidable = [LotState.Checked, LotState.Unreadable];
@@ -187,12 +188,27 @@ public sealed class DecideLot(
             }
         }
 
-        if (request.Decision == "release" && await certificates.IssueAsync(lot.Id, actor, cancellation) is { } problem)
+        if (request.Decision == "release" && await IssueAsync(lot.Id, actor, cancellation) is { } problem)
         {
             return problem;
         }
 
         return await lots.OneAsync(lot.Id, cancellation);
+    }
+
+    /// <summary>The signed release stands where issuing fails: <see cref="IssueDueCertificates"/> tries again.</summary>
+    private async Task<Problem?> IssueAsync(string lotId, string actor, CancellationToken cancellation)
+    {
+        try
+        {
+            return await certificates.IssueAsync(lotId, actor, cancellation);
+        }
+        catch (Exception e) when (e is not OperationCanceledException)
+        {
+            logger.LogError(e, "Lot {LotId} is released and its certificate could not be issued; it is tried again", lotId);
+            context.ChangeTracker.Clear();
+            return null;
+        }
     }
 
     private static Problem? Check(ReviewRequest request)
