@@ -14,6 +14,8 @@ public sealed class AuditTests(ServiceFixture service)
     public async Task The_log_grows_only_and_its_export_verifies_until_a_byte_is_changed()
     {
         HttpClient auditor = await service.AsAsync(ServiceFixture.Auditor);
+        await service.AsAsync(ServiceFixture.MethodOwner); // Signing in is an entry too.
+        await service.AsAsync(ServiceFixture.QualityUnit);
         JsonNode old = await (await auditor.GetAsync("/api/v1/audit/head")).JsonAsync();
         await Plant.ProductAsync(service);
         JsonNode current = await (await auditor.GetAsync("/api/v1/audit/head")).JsonAsync();

@@ -97,6 +97,8 @@ public sealed class ProductTests(ServiceFixture service)
         await (await both.PostAsJsonAsync($"/api/v1/products/{code}/specifications/2/approve", signed)).ProblemAsync(403, "not-allowed");
         HttpClient quality = await service.AsAsync(ServiceFixture.QualityUnit);
         await (await quality.PostAsJsonAsync($"/api/v1/products/{code}/specifications/2/approve", new { password = "wrong wrong wrong" })).ProblemAsync(422, "wrong-password", "/password");
+        await (await quality.PostAsJsonAsync($"/api/v1/products/{code}/specifications/2/approve", new { })).ProblemAsync(422, "invalid-field", "/password");
+        await (await quality.PostAsync($"/api/v1/products/{code}/specifications/2/approve", null)).ProblemAsync(422, "invalid-field", "/password");
         await (await quality.PostAsJsonAsync($"/api/v1/products/{code}/specifications/1/approve", signed)).ProblemAsync(409, "already-approved");
         await (await quality.PostAsJsonAsync($"/api/v1/products/{code}/specifications/9/approve", signed)).ProblemAsync(404, "not-found");
         Assert.Equal(before, await service.CountRecordsAsync());

@@ -108,6 +108,7 @@ public static class QcHost
             .AddScoped<SubmitLot>().AddScoped<ReadLots>().AddScoped<LotChecker>().AddScoped<DecideLot>().AddScoped<IssueCertificate>()
             .AddScoped<SignedHeads>().AddScoped<ManagePeople>().AddScoped<SigningDesk>().AddScoped<EndCertificate>();
         services.AddHostedService<IssueDueCertificates>();
+        services.AddSingleton<AccessLog>().AddHttpContextAccessor().AddRateLimiter(RateLimits.Add);
         services.AddIdentity<Person, IdentityRole>(identity =>
             {
                 // NIST SP 800-63B: length, no composition rules.
@@ -129,7 +130,11 @@ public static class QcHost
             cookie.LoginPath = "/sign-in";
             cookie.AccessDeniedPath = "/sign-in";
             cookie.Events.OnRedirectToLogin = context => AnswerOrRedirect(context, StatusCodes.Status401Unauthorized);
-            cookie.Events.OnRedirectToAccessDenied = context => AnswerOrRedirect(context, StatusCodes.Status403Forbidden);
+            cookie.Events.OnRedirectToAccessDenied = context =>
+            {
+                context.HttpContext.Items[Refusals.Mark] = true;
+                return AnswerOrRedirect(context, StatusCodes.Status403Forbidden);
+            };
         });
         services.AddAuthentication(Scheme)
             .AddPolicyScheme(Scheme, null, scheme => scheme.ForwardDefaultSelector = context =>
@@ -181,11 +186,13 @@ public static class QcHost
         app.Use(RequestId);
         app.UseSerilogRequestLogging();
         app.UseStatusCodePages(StatusProblems.WriteAsync);
+        app.UseMiddleware<Refusals>();
         app.UseMiddleware<SameOrigin>();
         app.UseStaticFiles();
         app.UseRouting();
         app.UseAuthentication();
         app.UseAuthorization();
+        app.UseRateLimiter();
         app.MapHealthChecks("/health/live", new() { Predicate = _ => false });
         app.MapHealthChecks("/health/ready");
         app.MapPrometheusScrapingEndpoint("/metrics");

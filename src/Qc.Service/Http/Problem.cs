@@ -53,6 +53,9 @@ public sealed record Problem(
     public static Problem InvalidField(string pointer, string detail) =>
         Invalid("invalid-field", "A field is wrong", detail, new FieldError(pointer, detail));
 
+    /// <summary>429.</summary>
+    public static Problem TooMany() => new("/problems/too-many-requests", "Too many requests", 429, "Too many requests came from this address; wait a minute.");
+
     /// <summary>501.</summary>
     public static Problem NotBuilt(string detail) => new("/problems/not-built", "Not built yet", 501, detail);
 

@@ -1,5 +1,6 @@
 using Microsoft.EntityFrameworkCore;
 using Qc.Records;
+using Qc.Records.Audit;
 using Qc.Records.Lots;
 using Qc.Service.Http;
 
@@ -11,6 +12,9 @@ namespace Qc.Service.Features.Certificates;
 /// </summary>
 internal sealed class IssueDueCertificates(IServiceScopeFactory scopes, IConfiguration configuration, ILogger<IssueDueCertificates> logger) : BackgroundService
 {
+    /// <summary>The request that released the lot is given this long to issue the certificate itself.</summary>
+    private static readonly TimeSpan Grace = TimeSpan.FromSeconds(5);
+
     private readonly TimeSpan _interval = TimeSpan.FromSeconds(configuration.GetValue<double?>("Qc:CertificateRetrySeconds") ?? 60);
 
     protected override async Task ExecuteAsync(CancellationToken stoppingToken)
@@ -37,9 +41,11 @@ internal sealed class IssueDueCertificates(IServiceScopeFactory scopes, IConfigu
         await using (AsyncServiceScope scope = scopes.CreateAsyncScope())
         {
             QcDbContext context = scope.ServiceProvider.GetRequiredService<QcDbContext>();
+            DateTimeOffset before = await context.DatabaseTimeAsync(cancellation) - Grace;
             due = await (
                 from l in context.Lots
-                where context.LotEvents.Where(e => e.LotId == l.Id).OrderByDescending(e => e.Id).First().State == LotState.Reviewed
+                let last = context.LotEvents.Where(e => e.LotId == l.Id).OrderByDescending(e => e.Id).First()
+                where last.State == LotState.Reviewed && last.At < before
                 select l.Id).ToListAsync(cancellation);
         }
 

@@ -4,6 +4,7 @@ using Microsoft.EntityFrameworkCore;
 using Qc.Records;
 using Qc.Records.Reviews;
 using Qc.Service.Http;
+using Qc.Service.Security;
 
 namespace Qc.Service.Features.Certificates;
 
@@ -30,11 +31,11 @@ internal static class VerifyApi
 
     public static void MapVerify(this IEndpointRouteBuilder api)
     {
-        RouteGroupBuilder group = api.MapGroup("/verify").WithTags("Certificates").AllowAnonymous();
+        RouteGroupBuilder group = api.MapGroup("/verify").WithTags("Certificates").AllowAnonymous().RequireRateLimiting(RateLimits.Strangers);
         group.MapGet("/{number}", async (string number, QcDbContext context, CancellationToken cancellation) =>
             await ByNumberAsync(context, number, cancellation) is { } found ? Results.Ok(found) : Problem.NotFound("certificate").ToResult())
-            .Produces<PublicCertificate>().WithProblems(404).WithSummary("Whether a certificate may be relied on, by its number");
-        group.MapPost("/", PostAsync).Accepts<byte[]>("application/pdf").Produces<PublicCertificate>().WithProblems(404, 413)
+            .Produces<PublicCertificate>().WithProblems(404, 429).WithSummary("Whether a certificate may be relied on, by its number");
+        group.MapPost("/", PostAsync).Accepts<byte[]>("application/pdf").Produces<PublicCertificate>().WithProblems(404, 413, 429)
             .WithSummary("The same by the file: it is byte for byte one that was issued here, or 404");
     }
 

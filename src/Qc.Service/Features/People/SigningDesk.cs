@@ -4,6 +4,7 @@ using Qc.Records;
 using Qc.Records.People;
 using Qc.Records.Reviews;
 using Qc.Service.Http;
+using Qc.Service.Security;
 
 namespace Qc.Service.Features.People;
 
@@ -11,11 +12,16 @@ namespace Qc.Service.Features.People;
 /// Electronic signatures: the password is entered again at each signing (21 CFR 11.200), and what is signed is bound by
 /// its hash (11.70). A wrong password counts towards the lockout.
 /// </summary>
-public sealed class SigningDesk(UserManager<Person> people, QcDbContext context)
+public sealed class SigningDesk(UserManager<Person> people, QcDbContext context, AccessLog log, IHttpContextAccessor http)
 {
     /// <summary>Checks the signer's password; null where it is right.</summary>
-    public async Task<Problem?> RefuseAsync(string user, string password)
+    public async Task<Problem?> RefuseAsync(string user, string? password)
     {
+        if (string.IsNullOrEmpty(password))
+        {
+            return Problem.InvalidField("/password", "Enter your password again: it is your signature.");
+        }
+
         Person? person = await people.FindByNameAsync(user);
         if (person is null || !person.IsActive)
         {
@@ -34,6 +40,12 @@ public sealed class SigningDesk(UserManager<Person> people, QcDbContext context)
         }
 
         await people.AccessFailedAsync(person);
+        await log.NoteAsync(http.HttpContext!, $"person:{person.UserName}", "signature.refused", "person", person.UserName!, "The password is wrong.");
+        if (await people.IsLockedOutAsync(person))
+        {
+            await log.NoteAsync(http.HttpContext!, $"person:{person.UserName}", "account.locked", "person", person.UserName!, "Several wrong passwords one after the other.");
+        }
+
         return Problem.Invalid("wrong-password", "The signature was refused", "The password is wrong.", new FieldError("/password", "The password is wrong."));
     }
 

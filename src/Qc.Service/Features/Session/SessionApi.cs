@@ -1,6 +1,7 @@
 using Microsoft.AspNetCore.Identity;
 using Qc.Records.People;
 using Qc.Service.Http;
+using Qc.Service.Security;
 
 namespace Qc.Service.Features.Session;
 
@@ -27,15 +28,15 @@ internal static class SessionApi
     {
         RouteGroupBuilder group = api.MapGroup("/session").WithTags("Session");
         group.MapPost("/", SignInAsync).AllowAnonymous().Accepts<SessionRequest>("application/json").Produces<SessionDto>()
-            .WithProblems(400, 401, 415, 422).WithSummary("Signs a person in (cookie)");
+            .WithProblems(400, 401, 415, 422, 429).RequireRateLimiting(RateLimits.Strangers).WithSummary("Signs a person in (cookie)");
         group.MapGet("/", WhoAsync).RequireAuthorization().Produces<SessionDto>().WithProblems(401).WithSummary("Who is signed in");
         group.MapDelete("/", SignOutAsync).AllowAnonymous().Produces(204).WithSummary("Signs out");
     }
 
     private static async Task<IResult> SignInAsync(
-        HttpRequest request, SignInManager<Person> signIn, UserManager<Person> people, ILogger<SessionRequest> logger, CancellationToken cancellation)
+        HttpContext http, SignInManager<Person> signIn, UserManager<Person> people, AccessLog log, CancellationToken cancellation)
     {
-        Outcome<SessionRequest> body = await JsonBody.ReadAsync<SessionRequest>(request, cancellation);
+        Outcome<SessionRequest> body = await JsonBody.ReadAsync<SessionRequest>(http.Request, cancellation);
         if (body.Problem is { } problem)
         {
             return problem.ToResult();
@@ -43,23 +44,36 @@ internal static class SessionApi
 
         SessionRequest session = body.Value!;
         Person? person = await people.FindByNameAsync(session.User);
-        SignInResult result = person is { IsActive: true }
-            ? await signIn.PasswordSignInAsync(person, session.Password, isPersistent: false, lockoutOnFailure: true)
-            : SignInResult.Failed;
         if (person is null)
         {
             _ = people.PasswordHasher.HashPassword(new Person { PrintedName = "" }, session.Password); // An unknown name must not answer sooner.
+
+            // What was typed as a name may be a password; it is not written down.
+            await log.NoteAsync(http, AccessLog.Nobody, "session.refused", "person", "unknown", "There is no such account.");
+            return Refused();
         }
 
+        bool wasLocked = await people.IsLockedOutAsync(person);
+        SignInResult result = person.IsActive ? await signIn.PasswordSignInAsync(person, session.Password, isPersistent: false, lockoutOnFailure: true) : SignInResult.Failed;
         if (!result.Succeeded)
         {
-            // The same words for an unknown name, a wrong password and a locked account: they reveal nothing.
-            logger.LogWarning("Sign-in refused for {User}: {Result}", session.User, result.ToString());
-            return Problem.SignInNeeded("The user name or password is wrong, or the account is locked for a while after several wrong passwords.").ToResult();
+            string why = !person.IsActive ? "The account is closed." : wasLocked ? "The account is locked." : "The password is wrong.";
+            await log.NoteAsync(http, AccessLog.Nobody, "session.refused", "person", person.UserName!, why);
+            if (result.IsLockedOut && !wasLocked)
+            {
+                await log.NoteAsync(http, AccessLog.Nobody, "account.locked", "person", person.UserName!, "Several wrong passwords one after the other.");
+            }
+
+            return Refused();
         }
 
-        return Results.Ok(new SessionDto(person!.UserName!, person.PrintedName, [.. await people.GetRolesAsync(person)]));
+        await log.NoteAsync(http, $"person:{person.UserName}", "session.opened", "person", person.UserName!);
+        return Results.Ok(new SessionDto(person.UserName!, person.PrintedName, [.. await people.GetRolesAsync(person)]));
     }
+
+    /// <summary>The same words for an unknown name, a wrong password and a locked account: they reveal nothing.</summary>
+    private static IResult Refused() =>
+        Problem.SignInNeeded("The user name or password is wrong, or the account is locked for a while after several wrong passwords.").ToResult();
 
     private static async Task<IResult> WhoAsync(HttpContext http, UserManager<Person> people)
     {
@@ -69,8 +83,13 @@ internal static class SessionApi
             : Results.Ok(new SessionDto(person.UserName!, person.PrintedName, [.. await people.GetRolesAsync(person)]));
     }
 
-    private static async Task<IResult> SignOutAsync(SignInManager<Person> signIn)
+    private static async Task<IResult> SignOutAsync(HttpContext http, SignInManager<Person> signIn, AccessLog log)
     {
+        if (Caller.IsPerson(http.User))
+        {
+            await log.NoteAsync(http, Caller.Name(http.User), "session.closed", "person", http.User.Identity!.Name!);
+        }
+
         await signIn.SignOutAsync();
         return Results.NoContent();
     }

@@ -11,7 +11,7 @@ using Qc.Service.Http;
 
 namespace Qc.Service.Features.Specifications;
 
-/// <summary>Body of an approval. With the password it is an electronic signature.</summary>
+/// <summary>Body of an approval. The password makes it an electronic signature; without it nothing is approved.</summary>
 public sealed record ApprovalRequest
 {
     /// <summary>The approver's password, entered again.</summary>
@@ -49,21 +49,15 @@ public sealed class ApproveSpecification(QcDbContext context, SigningDesk desk)
             return Problem.Conflict("already-approved", "Approved already", $"Version {version} of {code} is approved already.");
         }
 
-        if (request.Password is not null && await desk.RefuseAsync(user, request.Password) is { } refused)
+        if (await desk.RefuseAsync(user, request.Password) is { } refused)
         {
             return refused;
         }
 
         await using var transaction = await context.Database.BeginTransactionAsync(cancellation);
         DateTimeOffset now = await context.DatabaseTimeAsync(cancellation);
-        string? signatureId = null;
-        if (request.Password is not null)
-        {
-            Records.Reviews.Signature signature = await desk.SignAsync(
-                user, SignatureMeaning.Approved, "specification", draft.Id, draft.CriteriaJson, now, cancellation);
-            signatureId = signature.Id;
-        }
-
+        Records.Reviews.Signature signature = await desk.SignAsync(
+            user, SignatureMeaning.Approved, "specification", draft.Id, draft.CriteriaJson, now, cancellation);
         context.SpecificationEvents.Add(new SpecificationEvent
         {
             Id = Ids.New(now),
@@ -72,7 +66,7 @@ public sealed class ApproveSpecification(QcDbContext context, SigningDesk desk)
             EffectiveFrom = request.EffectiveFrom ?? Posted(draft).EffectiveFrom ?? now,
             At = now,
             By = actor,
-            SignatureId = signatureId,
+            SignatureId = signature.Id,
         });
         try
         {
@@ -81,7 +75,7 @@ public sealed class ApproveSpecification(QcDbContext context, SigningDesk desk)
                     new AuditDraft(actor, "specification.approved", "specification", $"{code}/{version}", After: new JsonObject
                     {
                         ["version"] = version,
-                        ["signed"] = signatureId is not null,
+                        ["signature"] = JsonNode.Parse(signature.StatementJson),
                     }),
                 ],
                 cancellation);

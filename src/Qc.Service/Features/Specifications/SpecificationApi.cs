@@ -18,7 +18,7 @@ internal static class SpecificationApi
         group.MapGet("/", ListAsync).Produces<IReadOnlyList<SpecificationDto>>().WithProblems(401, 403, 404).WithSummary("All versions, newest first");
         group.MapPost("/{version:int}/approve", ApproveAsync).RequireAuthorization(Policies.ApproveSpecifications)
             .Accepts<ApprovalRequest>(true, "application/json").Produces<SpecificationDto>().WithProblems(400, 401, 403, 404, 409, 422)
-            .WithSummary("Approves a draft, by a second person");
+            .WithSummary("Approves a draft, by a second person, signed with the password");
     }
 
     private static async Task<IResult> DraftAsync(
