@@ -5,7 +5,8 @@ namespace Qc.Engine.Rivals;
 
 /// <summary>
 /// A text that is equal for two structures if and only if they are the same substance to an achiral measurement: constitution,
-/// charges and isotopes, double-bond geometry, and CIP descriptors up to mirror image. Kekulé forms of an aromatic ring are one.
+/// charges and isotopes, double-bond geometry, and CIP descriptors up to mirror image
+/// (centres that have none, as cis and trans on rings, are not told apart). Kekulé forms of an aromatic ring are one.
 /// </summary>
 public static class StructureForm
 {
@@ -26,8 +27,25 @@ public static class StructureForm
         return string.CompareOrdinal(form, mirrored) <= 0 ? form : mirrored;
     }
 
+    /// <summary>
+    /// A text that is equal also for tautomers that differ only in which nitrogen, oxygen or sulfur bears a hydrogen, and for any
+    /// arrangement in space: skeleton and hydrogens on other atoms only. Among isomers, such tautomers are one substance.
+    /// </summary>
+    /// <exception cref="ArgumentException">More than <see cref="MostAtoms"/> heavy atoms.</exception>
+    public static string SkeletonOf(Molecule molecule)
+    {
+        bool IsMobile(Atom atom) => atom.AtomicNumber is 7 or 8 or 16;
+        return Text(Label(new Molecule(
+            [.. molecule.Atoms.Select(atom => new Atom(atom.Index, atom.AtomicNumber, 0, IsMobile(atom) ? 0 : atom.HydrogenCount, false, atom.Isotope))],
+            [.. molecule.Bonds.Select(bond => new Bond(bond.A, bond.B, 1, false))],
+            molecule.Rings), mirrored: false).Code);
+    }
+
     /// <summary>Canonical order of the atoms.</summary>
     internal static int[] OrderOf(Molecule molecule) => [.. Label(molecule, mirrored: false).Order];
+
+    /// <summary>Whether a symmetry of the constitution carries one atom to the other.</summary>
+    internal static bool AreEquivalent(Molecule molecule, int a, int b) => Label(molecule, mirrored: false).AreEquivalent(a, b);
 
     private static GraphLabelling Label(Molecule molecule, bool mirrored)
     {
