@@ -59,7 +59,7 @@ internal static class GroupAssignment
         var best = new Dictionary<string, Assignment>();
         foreach (double areaPerProton in Scales(groups, signals))
         {
-            foreach (Assignment assignment in Search(groups, signals, areaPerProton, wanted))
+            foreach (Assignment assignment in Search(groups, signals, areaPerProton, wanted, BeamWidth))
             {
                 string key = string.Join(',', assignment.SignalOf);
                 if (!best.TryGetValue(key, out Assignment? known) || assignment.Cost < known.Cost)
@@ -71,6 +71,11 @@ internal static class GroupAssignment
 
         return [.. best.OrderBy(pair => pair.Value.Cost).ThenBy(pair => pair.Key, StringComparer.Ordinal).Take(wanted).Select(pair => pair.Value)];
     }
+
+    /// <summary>The best assignment at a known area per proton, with a narrow beam: quick, for comparing many structures.</summary>
+    public static Assignment? BestAt(
+        IReadOnlyList<AssignableGroup> groups, IReadOnlyList<AssignableSignal> signals, double areaPerProton, int beamWidth) =>
+        groups.Count == 0 || areaPerProton <= 0 ? null : Search(groups, signals, areaPerProton, 1, beamWidth).First();
 
     private static IEnumerable<double> Scales(IReadOnlyList<AssignableGroup> groups, IReadOnlyList<AssignableSignal> signals)
     {
@@ -111,7 +116,7 @@ internal static class GroupAssignment
     private sealed record Partial(ImmutableArray<int> SignalOf, double Cost, double[] Protons);
 
     private static IEnumerable<Assignment> Search(
-        IReadOnlyList<AssignableGroup> groups, IReadOnlyList<AssignableSignal> signals, double areaPerProton, int wanted)
+        IReadOnlyList<AssignableGroup> groups, IReadOnlyList<AssignableSignal> signals, double areaPerProton, int wanted, int beamWidth)
     {
         int[] order = [.. Enumerable.Range(0, groups.Count).OrderByDescending(i => groups[i].ShiftPpm).ThenBy(i => i)];
         var beam = new List<Partial> { new([], 0, new double[signals.Count]) };
@@ -138,7 +143,7 @@ internal static class GroupAssignment
                 }
             }
 
-            beam = [.. next.OrderBy(p => p.Cost).Take(BeamWidth)];
+            beam = [.. next.OrderBy(p => p.Cost).Take(beamWidth)];
         }
 
         var finished = new List<Assignment>();

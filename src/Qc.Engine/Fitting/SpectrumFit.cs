@@ -126,7 +126,7 @@ public static class SpectrumFit
     }
 
     /// <summary>Lines of one multiplet are no further apart than its largest coupling.</summary>
-    private static double GapHertz(Expectation product)
+    internal static double GapHertz(Expectation product)
     {
         double largest = product.Couplings.Select(c => Math.Abs(c.Hertz))
             .Concat(product.HeteroCouplings.Select(c => Math.Abs(c.Hertz)))

@@ -26,22 +26,9 @@ internal sealed record StartingPlaces(
     public static ImmutableArray<StartingPlaces> Candidates(
         FitInput input, ImmutableArray<MeasuredSignal> signals, ForeignClaims claims, int wanted)
     {
-        Expectation product = input.Product;
         Interval window = input.Spectrum.WindowPpm;
-        int count = product.Protons.Groups.Length;
-        var measured = new bool[count];
-        var assignable = new List<AssignableGroup>();
-        for (int g = 0; g < count; g++)
-        {
-            ExpectedShift shift = product.Shifts[g];
-            measured[g] = window.Contains(shift.ShiftPpm);
-            if (measured[g] && product.Protons.Groups[g].Lability == Lability.Fixed)
-            {
-                assignable.Add(new AssignableGroup(
-                    g, product.Protons.Groups[g].Count, shift.ShiftPpm, shift.StandardUncertaintyPpm, RmsHertz(product, g)));
-            }
-        }
-
+        bool[] measured = [.. input.Product.Shifts.Select(shift => window.Contains(shift.ShiftPpm))];
+        List<AssignableGroup> assignable = Assignable(input.Product, window);
         AssignableSignal[] offered = [.. signals.Select((signal, s) => claims.Offer(signal, s))];
         ImmutableArray<Assignment> assignments = GroupAssignment.Best(assignable, offered, wanted);
         if (assignments.IsEmpty)
@@ -51,6 +38,19 @@ internal sealed record StartingPlaces(
 
         return [.. assignments.Select(a => Place(input, signals, claims, assignable, measured, a))];
     }
+
+    /// <summary>The groups that must show in a window: those that do not exchange and are expected in it.</summary>
+    internal static List<AssignableGroup> Assignable(Expectation product, Interval window) =>
+    [
+        .. product.Protons.Groups
+            .Where(group => group.Lability == Lability.Fixed && window.Contains(product.Shifts[group.Index].ShiftPpm))
+            .Select(group => new AssignableGroup(
+                group.Index,
+                group.Count,
+                product.Shifts[group.Index].ShiftPpm,
+                product.Shifts[group.Index].StandardUncertaintyPpm,
+                RmsHertz(product, group.Index))),
+    ];
 
     /// <summary>√(¼ Σ n J²): root mean square width of the group's multiplet in the weak limit.</summary>
     internal static double RmsHertz(Expectation expectation, int group)
