@@ -341,7 +341,11 @@ internal sealed class FitReading
         return -MisfitOfSignals() - (_state.Cost - _state.DataCost) + occam - (SpectrumFit.AbsentGroupCost * absent);
     }
 
-    /// <summary>Half a sum of squares over all signals, each up to a limit that grows with its area up to half a proton.</summary>
+    /// <summary>
+    /// Half a sum of squares over all signals, each up to a limit that grows with its area up to half a proton. What noise alone
+    /// adds, one half a point, is taken off before the limit: else a long signal would reach it however well it is drawn, and
+    /// drawing it would count for nothing.
+    /// </summary>
     private double MisfitOfSignals()
     {
         Spectrum spectrum = _input.Spectrum;
@@ -357,7 +361,7 @@ internal sealed class FitReading
             {
                 int at = (int)Math.Round(spectrum.IndexOf(whole.Hertz[i] / spectrum.FrequencyMHz));
                 double z = (whole.Intensity[i] - Modelled[at]) * whole.Weight[i];
-                misfit += 0.5 * z * z;
+                misfit += 0.5 * ((z * z) - 1);
             }
 
             sum += Math.Min(misfit, LargestSignalMisfit * Math.Clamp(2 * signal.Area / areaPerProton, 0, 1));

@@ -49,6 +49,14 @@ internal sealed class GraphLabelling
         return orbit[a] == orbit[b];
     }
 
+    /// <summary>Of each vertex the least that it is equivalent to, after <see cref="Label"/>.</summary>
+    public int[] OrbitOfEach()
+    {
+        Span<int> orbit = stackalloc int[Size];
+        Orbits(orbit, fixPath: false);
+        return orbit[.._graph.Count].ToArray();
+    }
+
     /// <summary>Hashes of the surroundings of each vertex up to a number of bonds: equal for equivalent vertices.</summary>
     public void Colour(LabelledGraph graph, int rounds, Span<ulong> colours)
     {

@@ -36,6 +36,9 @@ public sealed record NeighbourOptions
     /// <summary>... and only if it has no more than this many structures before filters: a list cut short would only seem complete.</summary>
     public int MostListed { get; init; } = 2_000;
 
+    /// <summary>... and no more than this many after filters: predicting them all must stay a matter of a fraction of a second.</summary>
+    public int MostKept { get; init; } = 300;
+
     /// <summary>Structures left out.</summary>
     public RivalFilters Filters { get; init; } = RivalFilters.Default;
 }
@@ -121,11 +124,14 @@ public static class Neighbours
             return false;
         }
 
-        foreach (Molecule isomer in list.Select(graph => graph.ToMolecule()).Where(known.Admit))
+        cancellation.ThrowIfCancellationRequested();
+        RivalCandidate[] others = [.. list.Select(graph => graph.ToMolecule()).Where(known.Admit).Select(isomer => new RivalCandidate(isomer, RivalOrigin.Isomer))];
+        if (found.Count + others.Length > options.MostKept)
         {
-            found.Add(new RivalCandidate(isomer, RivalOrigin.Isomer));
+            return false;
         }
 
+        found.AddRange(others);
         return true;
     }
 

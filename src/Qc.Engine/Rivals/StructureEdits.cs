@@ -52,10 +52,13 @@ internal static class StructureEdits
     {
         Atom[] drawn = [.. molecule.Atoms.Where(atom => atom.Winding != Winding.None)];
         Atom[] open = [.. drawn.Where(atom => atom.Handedness == Handedness.None)];
-        return drawn.Length < 2
-            ? []
-            : open.Where((atom, i) => !open.Take(i).Any(earlier => StructureForm.AreEquivalent(molecule, earlier.Index, atom.Index)))
-                .Select(atom => WithTurned(molecule, atom));
+        if (drawn.Length < 2 || open.Length == 0)
+        {
+            return [];
+        }
+
+        int[] equivalent = StructureForm.EquivalentOf(molecule);
+        return open.DistinctBy(atom => equivalent[atom.Index]).Select(atom => WithTurned(molecule, atom));
     }
 
     private static Molecule WithTurned(Molecule molecule, Atom atom)

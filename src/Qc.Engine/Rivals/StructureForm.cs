@@ -44,8 +44,8 @@ public static class StructureForm
     /// <summary>Canonical order of the atoms.</summary>
     internal static int[] OrderOf(Molecule molecule) => [.. Label(molecule, mirrored: false).Order];
 
-    /// <summary>Whether a symmetry of the constitution carries one atom to the other.</summary>
-    internal static bool AreEquivalent(Molecule molecule, int a, int b) => Label(molecule, mirrored: false).AreEquivalent(a, b);
+    /// <summary>Of each atom the first that a symmetry of the constitution makes it equivalent to.</summary>
+    internal static int[] EquivalentOf(Molecule molecule) => Label(molecule, mirrored: false).OrbitOfEach();
 
     private static GraphLabelling Label(Molecule molecule, bool mirrored)
     {

@@ -111,10 +111,20 @@ public sealed record BudgetLine(string Source, double RelativeStandardUncertaint
 
 /// <summary>A rival structure put to the same test.</summary>
 /// <param name="Name">Its name.</param>
-/// <param name="Smiles">Canonical SMILES.</param>
+/// <param name="Smiles">SMILES; canonical where the method owner named it.</param>
 /// <param name="LogEvidenceRatio">log10 evidence of the expected structure over the rival.</param>
 /// <param name="ToldApart">Whether that reaches the limit.</param>
-public sealed record RivalResult(string Name, string Smiles, double LogEvidenceRatio, bool ToldApart);
+public sealed record RivalResult(string Name, string Smiles, double LogEvidenceRatio, bool ToldApart)
+{
+    /// <summary>Whether the engine generated it, rather than the method owner naming it; its SMILES is its name then.</summary>
+    public bool IsGenerated { get; init; }
+
+    /// <summary>
+    /// Whether the ratio comes from a full fit of the rival. Else it is the estimate of the screen, from places, counts and widths
+    /// of the predicted signals alone, and counts as told apart only well beyond the limit.
+    /// </summary>
+    public bool IsFitted { get; init; } = true;
+}
 
 /// <summary>A substance found beside the product.</summary>
 /// <param name="Name">Its name.</param>

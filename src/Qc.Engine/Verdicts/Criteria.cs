@@ -64,6 +64,12 @@ public sealed record IdentityCriteria
     /// <summary>A rival is told apart at this log10 evidence ratio.</summary>
     public double RivalLogEvidenceRatio { get; init; } = 3;
 
+    /// <summary>
+    /// Whether isomers are generated and join the test beside the rivals that the method owner named: those nearest to the
+    /// expected structure, for small formulas all of them.
+    /// </summary>
+    public bool GeneratedRivals { get; init; } = true;
+
     /// <summary>Whether a rival that is not told apart flags the lot.</summary>
     public bool RivalsMustBeToldApart { get; init; } = true;
 }

@@ -31,10 +31,7 @@ internal static class SpectrumJudge
         FitResult fit = SpectrumFit.Run(input, cancellation);
         var judged = new JudgedSpectrum { Name = name, Request = request, Processing = processing, Expectation = expectation, Fit = fit };
         ImmutableArray<LeftOver> leftOver = LeftOvers(judged, input);
-        ImmutableArray<RivalResult> rivals = Rivals(request, input, fit, cancellation);
-        (Quantity Quantity, Uncertain MassFraction)? assay = Amounts.Assay(judged);
-        ImmutableArray<Quantity> quantities = assay is { } a ? [a.Quantity, .. Amounts.Of(judged)] : [.. Amounts.Of(judged)];
-        ImmutableArray<Finding> findings =
+        ImmutableArray<Finding> suitability =
         [
             .. SolventRule.Judge(judged),
             .. AxisOffsetRule.Judge(judged),
@@ -42,6 +39,14 @@ internal static class SpectrumJudge
             .. LineWidthRule.Judge(judged),
             .. DigitalResolutionRule.Judge(judged),
             .. PhaseRule.Judge(judged),
+        ];
+        bool isSuitable = suitability.All(finding => finding.Outcome == Outcome.Pass);
+        RivalTest rivals = RivalTest.Run(request, input, fit, isSuitable, cancellation);
+        (Quantity Quantity, Uncertain MassFraction)? assay = Amounts.Assay(judged);
+        ImmutableArray<Quantity> quantities = assay is { } a ? [a.Quantity, .. Amounts.Of(judged)] : [.. Amounts.Of(judged)];
+        ImmutableArray<Finding> findings =
+        [
+            .. suitability,
             .. SubstanceRule.Judge(judged, leftOver.Sum(l => l.MolPercent)),
             .. PresenceRule.Judge(judged),
             .. ShiftRule.Judge(judged),
@@ -53,7 +58,7 @@ internal static class SpectrumJudge
             .. RivalRule.Judge(request.Criteria, request.ProductName, rivals),
             .. AssayRule.Judge(judged, assay),
         ];
-        return new SpectrumJudgement(judged, findings, leftOver, Others(judged), quantities, rivals);
+        return new SpectrumJudgement(judged, findings, leftOver, Others(judged), quantities, rivals.Results);
     }
 
     /// <summary>Curves for drawing.</summary>
@@ -124,19 +129,5 @@ internal static class SpectrumJudge
                 perProton > 0 ? o.Area / perProton : 0,
                 o.Role is "impurity" or "internal standard" && perProton > 0 && o.Protons > 0 ? 100 * o.Area / o.Protons / perProton : null)),
         ];
-    }
-
-    private static ImmutableArray<RivalResult> Rivals(CheckRequest request, FitInput input, FitResult fit, CancellationToken cancellation)
-    {
-        string solvent = input.Spectrum.RecognisedSolvent ?? request.Solvent;
-        var results = new List<RivalResult>();
-        foreach (NamedStructure rival in request.Rivals)
-        {
-            FitResult other = SpectrumFit.Run(input with { Product = Expect(rival.Structure, solvent) }, cancellation);
-            double ratio = (fit.LogEvidence - other.LogEvidence) / Math.Log(10);
-            results.Add(new RivalResult(rival.Name, rival.Smiles, ratio, ratio >= request.Criteria.Identity.RivalLogEvidenceRatio));
-        }
-
-        return [.. results.OrderBy(r => r.LogEvidenceRatio)];
     }
 }

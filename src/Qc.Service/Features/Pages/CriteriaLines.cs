@@ -32,7 +32,7 @@ public static class CriteriaLines
             new("Unaccounted signal in all", $"at most {N(i.UnaccountedTotalMolPercent)} mol %", $"at most {N(i.UnaccountedTotalReferenceMolPercent)} mol %"),
             new(
                 "Rivals",
-                $"told apart from a log10 evidence ratio of {N(i.RivalLogEvidenceRatio)} on; one that is not {(i.RivalsMustBeToldApart ? "flags the lot" : "is stated only")}"),
+                $"told apart from a log10 evidence ratio of {N(i.RivalLogEvidenceRatio)} on; one that is not {(i.RivalsMustBeToldApart ? "flags the lot" : "is stated only")}; isomers are {(i.GeneratedRivals ? "generated and join the test" : "not generated")}"),
             new("Signal to noise of the largest multiplet", $"at least {N(s.SignalToNoise)}; for an assay {N(s.SignalToNoiseAssay)}"),
             new("Line width at half height", $"at most {N(s.LineWidthHertz)} Hz; below 300 MHz {N(s.LineWidthLowFieldHertz)} Hz"),
             new("Offset of the axis", $"at most {N(s.AxisOffsetPpm)} ppm", $"at most {N(s.AxisOffsetReferencePpm)} ppm"),
