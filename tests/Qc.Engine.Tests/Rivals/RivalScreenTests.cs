@@ -14,7 +14,8 @@ public class RivalScreenTests(StructureFixture structures, ITestOutputHelper out
 {
     /// <summary>
     /// Spectra of which the truth is known: the predicted one with every shift displaced by up to one standard uncertainty.
-    /// The screen is a bound: the full fit of a rival must not tell less than the screen did, or the screen would lose a rival.
+    /// What the screen tells apart by itself (a log10 ratio of 4 and more) is not fitted in a lot check, so a full fit must not find
+    /// that it was wrong about it.
     /// </summary>
     [Theory]
     [InlineData("CCCOC(C)=O", 400, 1)]
@@ -23,17 +24,17 @@ public class RivalScreenTests(StructureFixture structures, ITestOutputHelper out
     [InlineData("COc1cc(C=O)ccc1O", 400, 4)]
     [InlineData("Cc1ccc(Cl)cc1", 300, 5)]
     [InlineData("CCOC(=O)c1ccccc1", 80, 6)]
-    public void The_screen_never_promises_more_than_the_full_fit_of_a_rival(string smiles, double frequencyMHz, int seed)
+    public void A_rival_that_the_screen_tells_apart_alone_is_told_apart_by_the_full_fit_too(string smiles, double frequencyMHz, int seed)
     {
         (Molecule structure, FitInput input, FitResult fit) = Measured(smiles, smiles, frequencyMHz, seed);
         ImmutableArray<ScreenedRival> ranked = RivalScreen.Rank(
             structure, input, fit, "CDCl3", Neighbours.Of(structure, new NeighbourOptions()).Candidates, default);
         Assert.NotEmpty(ranked);
-        foreach (ScreenedRival rival in ranked.Take(4))
+        foreach (ScreenedRival rival in ranked.Where(r => r.Log10Ratio >= 4).Take(5))
         {
             double full = (fit.LogEvidence - SpectrumFit.Run(input with { Product = Expect(rival.Candidate.Structure) }).LogEvidence) / Math.Log(10);
             output.WriteLine($"{SmilesWriter.Write(rival.Candidate.Structure)} screen {rival.Log10Ratio:0.0} fit {full:0.0}");
-            Assert.True(full >= Math.Min(rival.Log10Ratio, 3.5) - 0.5, $"{SmilesWriter.Write(rival.Candidate.Structure)}: screen {rival.Log10Ratio}, fit {full}");
+            Assert.True(full >= 3, $"{SmilesWriter.Write(rival.Candidate.Structure)}: screen {rival.Log10Ratio}, fit {full}");
         }
     }
 
