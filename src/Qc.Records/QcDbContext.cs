@@ -24,6 +24,12 @@ public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : Identit
     /// <summary>Approvals and retirements.</summary>
     public DbSet<SpecificationEvent> SpecificationEvents => Set<SpecificationEvent>();
 
+    /// <summary>Reference lots of products.</summary>
+    public DbSet<ProductReference> ProductReferences => Set<ProductReference>();
+
+    /// <summary>Their releases and withdrawals.</summary>
+    public DbSet<ProductReferenceEvent> ProductReferenceEvents => Set<ProductReferenceEvent>();
+
     /// <summary>Lots.</summary>
     public DbSet<Lot> Lots => Set<Lot>();
 
@@ -118,6 +124,11 @@ public sealed class QcDbContext(DbContextOptions<QcDbContext> options) : Identit
         builder.Entity<SpecificationVersion>().HasOne<Product>().WithMany().HasForeignKey(s => s.ProductId);
         builder.Entity<SpecificationEvent>().HasOne<SpecificationVersion>().WithMany().HasForeignKey(e => e.SpecificationId);
         builder.Entity<SpecificationEvent>().HasOne<Signature>().WithMany().HasForeignKey(e => e.SignatureId);
+        builder.Entity<ProductReference>().HasOne<Product>().WithMany().HasForeignKey(r => r.ProductId);
+        builder.Entity<ProductReference>().HasOne<Lot>().WithMany().HasForeignKey(r => r.LotId);
+        builder.Entity<ProductReference>().HasOne<Computation>().WithMany().HasForeignKey(r => r.ComputationId);
+        builder.Entity<ProductReferenceEvent>().HasOne<ProductReference>().WithMany().HasForeignKey(e => e.ReferenceId);
+        builder.Entity<ProductReferenceEvent>().HasOne<Signature>().WithMany().HasForeignKey(e => e.SignatureId);
         builder.Entity<Lot>().HasOne<Product>().WithMany().HasForeignKey(l => l.ProductId);
         builder.Entity<Lot>().HasOne<SpecificationVersion>().WithMany().HasForeignKey(l => l.SpecificationId);
         builder.Entity<LotSpectrum>().HasOne<Lot>().WithMany().HasForeignKey(s => s.LotId);

@@ -204,6 +204,12 @@ public sealed record CheckReport
     /// <summary>Rivals, closest first.</summary>
     public ImmutableArray<RivalResult> Rivals { get; init; } = [];
 
+    /// <summary>The reference lot it was judged against; null where by prediction.</summary>
+    public string? Reference { get; init; }
+
+    /// <summary>Fitted shifts and couplings, by which the lot itself can become a reference.</summary>
+    public FittedConstants? Constants { get; init; }
+
     /// <summary>Spectra, in order of submission.</summary>
     public ImmutableArray<SpectrumReport> Spectra { get; init; } = [];
 }

@@ -54,6 +54,9 @@ public sealed record CheckRequest
     /// <summary>What was weighed, where an assay is asked for.</summary>
     public SampleFacts? Sample { get; init; }
 
+    /// <summary>The product's reference lot, where it has one in force.</summary>
+    public ReferenceLot? Reference { get; init; }
+
     /// <summary>Mix-ups the method owner named: structures to be told apart.</summary>
     public ImmutableArray<NamedStructure> Rivals { get; init; } = [];
 }

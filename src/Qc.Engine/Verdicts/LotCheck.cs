@@ -71,6 +71,8 @@ public static class LotCheck
             Others = first.Others,
             Quantities = first.Quantities,
             Rivals = first.Rivals,
+            Reference = first.Judged.HasReference ? request.Reference?.Name : null,
+            Constants = FittedConstants.Of(first.Judged),
             Spectra = [.. spectra],
         };
     }

@@ -27,6 +27,7 @@ internal static class SpectrumJudge
     {
         ProcessingOutcome processing = SpectrumProcessor.Process(measurement, new ProcessingOptions { PrescribedSolvent = request.Solvent });
         string solvent = processing.Spectrum.RecognisedSolvent ?? request.Solvent;
+        expectation = request.Reference?.Apply(expectation, solvent, processing.Spectrum.AxisCorrectionPpm is not null) ?? expectation;
         FitInput input = Input(request, processing.Spectrum, expectation, solvent);
         FitResult fit = SpectrumFit.Run(input, cancellation);
         var judged = new JudgedSpectrum { Name = name, Request = request, Processing = processing, Expectation = expectation, Fit = fit };

@@ -19,6 +19,7 @@ using Qc.Service.Features.People;
 using Qc.Service.Features.Products;
 using Qc.Service.Features.Reviews;
 using Qc.Service.Features.Session;
+using Qc.Service.Features.References;
 using Qc.Service.Features.Specifications;
 using Qc.Service.Http;
 using Qc.Service.Security;
@@ -104,7 +105,7 @@ public static class QcHost
             provider.GetRequiredService<ILogger<SiteCertificate>>()));
         services.AddSingleton<CallbackSender>().AddSingleton<LotWaiters>().AddSingleton<QcMetrics>().AddSingleton<Readiness>();
         services.AddDbContextWithWolverineIntegration<QcDbContext>(b => QcDbContext.Configure(b, application), "queue");
-        services.AddScoped<CreateProduct>().AddScoped<ReadProduct>().AddScoped<DraftSpecification>().AddScoped<ApproveSpecification>()
+        services.AddScoped<CreateProduct>().AddScoped<ReadProduct>().AddScoped<DraftSpecification>().AddScoped<ApproveSpecification>().AddScoped<ManageReferences>()
             .AddScoped<SubmitLot>().AddScoped<ReadLots>().AddScoped<LotChecker>().AddScoped<DecideLot>().AddScoped<IssueCertificate>()
             .AddScoped<SignedHeads>().AddScoped<ManagePeople>().AddScoped<SigningDesk>().AddScoped<EndCertificate>();
         services.AddHostedService<IssueDueCertificates>();
@@ -206,6 +207,7 @@ public static class QcHost
         api.MapSession();
         api.MapProducts();
         api.MapSpecifications();
+        api.MapReferences();
         api.MapLots();
         api.MapReviews();
         api.MapCertificates();

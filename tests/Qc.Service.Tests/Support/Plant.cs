@@ -14,8 +14,8 @@ internal static class Plant
 {
     private static int _number;
 
-    /// <summary>A simulated spectrum of a substance in CDCl3 at 400 MHz with solvent, water and reference, as JCAMP-DX.</summary>
-    public static string Spectrum(string substance) => Encoding.UTF8.GetString(JcampWriter.Write(Measured(substance)));
+    /// <summary>A simulated spectrum of a substance in CDCl3 with solvent, water and reference, as JCAMP-DX.</summary>
+    public static string Spectrum(string substance, double frequencyMHz = 400) => Encoding.UTF8.GetString(JcampWriter.Write(Measured(substance, frequencyMHz)));
 
     /// <summary>A new code or lot number.</summary>
     public static string Unique(string prefix) => string.Create(CultureInfo.InvariantCulture, $"{prefix}-{Interlocked.Increment(ref _number)}");
@@ -33,7 +33,7 @@ internal static class Plant
     }
 
     /// <summary>The body of a submission.</summary>
-    public static JsonObject Lot(string product, string? substance = null, string? lot = null) => new()
+    public static JsonObject Lot(string product, string? substance = null, string? lot = null, double frequencyMHz = 400) => new()
     {
         ["product"] = product,
         ["lot"] = lot ?? Unique("L"),
@@ -42,7 +42,7 @@ internal static class Plant
         {
             ["name"] = "proton",
             ["format"] = substance is null ? "csv" : "jcamp-dx",
-            ["content"] = substance is null ? "not a spectrum" : Spectrum(substance),
+            ["content"] = substance is null ? "not a spectrum" : Spectrum(substance, frequencyMHz),
             ["encoding"] = "text",
         }),
     };
@@ -68,11 +68,11 @@ internal static class Plant
         return lot;
     }
 
-    private static SpectrumMeasurement Measured(string substance)
+    private static SpectrumMeasurement Measured(string substance, double frequencyMHz)
     {
-        var measurement = new DemoMeasurement(400, "CDCl3", 0.8, 500, Seed: 20260417);
+        var measurement = new DemoMeasurement(frequencyMHz, "CDCl3", 0.8, 500, Seed: 20260417);
         double[] intensity = DemoSpectrum.Make(measurement, (substance, 1), ("residual solvent", 0.05), ("water", 0.02), ("TMS", 0.02));
-        var facts = new AcquisitionFacts { Title = substance, Nucleus = "1H", ObserveFrequencyMHz = 400, ZeroPpmFrequencyMHz = 400, SolventLabel = "CDCl3" };
+        var facts = new AcquisitionFacts { Title = substance, Nucleus = "1H", ObserveFrequencyMHz = frequencyMHz, ZeroPpmFrequencyMHz = frequencyMHz, SolventLabel = "CDCl3" };
         return new SpectrumMeasurement(facts, [], intensity, null, measurement.FirstPpm, DemoSpectrum.PpmPerPoint(measurement), true);
     }
 }

@@ -14,6 +14,7 @@ using Qc.Records.Lots;
 using Qc.Records.Products;
 using Qc.Service.Features.Callbacks;
 using Qc.Service.Features.Certificates;
+using Qc.Service.Features.References;
 using Qc.Service.Features.Specifications;
 using Qc.Service.Hosting;
 using Qc.Service.Http;
@@ -60,13 +61,17 @@ public sealed class LotChecker(
         Product product = await context.Products.AsNoTracking().SingleAsync(p => p.Id == lot.ProductId, cancellation);
         SpecificationVersion specification = await context.SpecificationVersions.AsNoTracking().SingleAsync(s => s.Id == lot.SpecificationId, cancellation);
         List<LotSpectrum> spectra = await context.LotSpectra.AsNoTracking().Where(s => s.LotId == lotId).OrderBy(s => s.Number).ToListAsync(cancellation);
-        CheckRequest request = Request(lot, product, specification, spectra);
+        ProductReference? reference = await context.ReferenceInForceAsync(product.Id, lot.SubmittedAt, cancellation);
+        CheckRequest request = Request(lot, product, specification, spectra) with
+        {
+            Reference = reference is null ? null : await context.ReferenceLotAsync(reference, cancellation),
+        };
         var watch = Stopwatch.StartNew();
         CheckReport report = LotCheck.Run(request, cancellation);
         watch.Stop();
         logger.LogInformation(
             "Lot {LotId} checked in {Milliseconds} ms: {Verdict}", lotId, watch.ElapsedMilliseconds, report.Unreadable ? "unreadable" : report.Verdict);
-        await RecordAsync(lot, product, specification, spectra, report, watch.Elapsed.TotalMilliseconds, cancellation);
+        await RecordAsync(lot, product, specification, reference, spectra, report, watch.Elapsed.TotalMilliseconds, cancellation);
         metrics.Checked(report, watch.Elapsed);
     }
 
@@ -116,6 +121,7 @@ public sealed class LotChecker(
         Lot lot,
         Product product,
         SpecificationVersion specification,
+        ProductReference? reference,
         List<LotSpectrum> spectra,
         CheckReport report,
         double milliseconds,
@@ -131,6 +137,7 @@ public sealed class LotChecker(
             ["solvent"] = product.Solvent,
             ["criteria"] = JsonNode.Parse(specification.CriteriaJson),
             ["rivals"] = JsonNode.Parse(specification.RivalsJson),
+            ["reference"] = reference is null ? null : JsonNode.Parse(reference.ConstantsJson),
             ["sample"] = lot.SampleJson is null ? null : JsonNode.Parse(lot.SampleJson),
             ["spectra"] = new JsonArray([.. spectra.Select(s => (JsonNode)s.Sha256)]),
         };

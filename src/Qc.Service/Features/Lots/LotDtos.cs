@@ -70,6 +70,10 @@ public sealed record LotDto
     /// <summary>Quantities.</summary>
     public ImmutableArray<Quantity> Quantities { get; init; } = [];
 
+    /// <summary>The reference lot it was judged against; left out where it was judged by prediction.</summary>
+    [JsonIgnore(Condition = JsonIgnoreCondition.WhenWritingNull)]
+    public string? Reference { get; init; }
+
     /// <summary>Rivals.</summary>
     public ImmutableArray<RivalResult> Rivals { get; init; } = [];
 
@@ -196,6 +200,7 @@ internal static class LotMapping
             LeftOver = report?.LeftOver ?? [],
             Others = report is null ? [] : [.. report.Others.Select(o => new OtherDto(o.Name, o.Role, Pairs(o.RegionsPpm), o.Protons, o.MolPercent))],
             Quantities = report?.Quantities ?? [],
+            Reference = report?.Reference,
             Rivals = report?.Rivals ?? [],
             Spectra = [.. spectra.Select(s => Spectrum(s, report))],
             Reviews =

@@ -20,8 +20,6 @@ internal static class ProductApi
             .Produces<ProductDto>().WithProblems(401, 403, 404).WithSummary("A product and its specification in force");
         group.MapGet("/{code}/drawing.svg", DrawAsync).Produces(200, contentType: "image/svg+xml").WithProblems(401, 403, 404)
             .WithSummary("The structure with numbered atoms, as SVG");
-        group.MapPost("/{code}/reference", () => Problem.NotBuilt("Reference lots are not built yet; lots are judged by prediction.").ToResult())
-            .ExcludeFromDescription();
         group.MapGet("/{code}/specificity", () => Problem.NotBuilt("The specificity report of a method is not built yet.").ToResult())
             .ExcludeFromDescription();
     }
