@@ -14,10 +14,12 @@ public static class CommandLine
         usage:
           qc-verify log <export.json> --key <public.pem> [--head <earlier.json>]
           qc-verify proof <proof.json> --key <public.pem>
+          qc-verify archive <lot.zip> --key <public.pem>
           qc-verify certificate <certificate.pdf> --ca <certificate.pem>
         log: every entry of an export of the audit log is as signed, and none is missing; with --head, it also begins with
           the entries of a head that was kept: an answer of /api/v1/audit/head, or the data attached to a certificate.
         proof: an entry is in the signed log, or a log only grew since an older head.
+        archive: every file of a lot's archive is as the site signed it, none was added, and its log proofs hold.
         certificate: the signature is valid, covers the whole file and is by the site or authority given;
           the attached data are those that the certificate names.
         """;
@@ -27,7 +29,7 @@ public static class CommandLine
     {
         string? earlier = arguments is ["log", _, _, _, "--head", var kept] ? kept : null;
         if ((earlier is null ? arguments : arguments[..4]) is not [var command, var path, var option, var keyPath]
-            || (command, option) is not (("log", "--key") or ("proof", "--key") or ("certificate", "--ca")))
+            || (command, option) is not (("log", "--key") or ("archive", "--key") or ("proof", "--key") or ("certificate", "--ca")))
         {
             error.WriteLine(Usage);
             return 2;
@@ -65,9 +67,9 @@ public static class CommandLine
             throw new UnusableKeyException("The key file holds no public EC key in PEM.", e);
         }
 
-        if (command == "proof")
+        if (command is "proof" or "archive")
         {
-            return LogProof.Verify(file, key);
+            return command == "proof" ? LogProof.Verify(file, key) : ArchiveCheck.Verify(file, key);
         }
 
         if (earlier is null)

@@ -150,7 +150,7 @@ public sealed class AccessTests(ServiceFixture service)
         await (await administrator.PostAsJsonAsync("/api/v1/people", new { user = Plant.Unique("p"), printedName = "P", password = ServiceFixture.Password, roles = new[] { "king" } }))
             .ProblemAsync(422, "invalid-field", "/roles");
         await (await administrator.PostAsJsonAsync("/api/v1/people", new { user = "RITA", printedName = "P", password = ServiceFixture.Password, roles = new[] { "auditor" } }))
-            .ProblemAsync(422, "invalid-field", "/user");
+            .ProblemAsync(409, "user-exists");
         using HttpClient anonymous = service.Anonymous();
         await (await anonymous.PostAsJsonAsync("/api/v1/set-up", new { user = "eve", printedName = "Eve", password = ServiceFixture.Password })).ProblemAsync(409, "set-up-done");
         Assert.Equal(before, await service.CountRecordsAsync());

@@ -1,8 +1,12 @@
 using System.Diagnostics;
+using System.IO.Compression;
 using System.Net;
 using System.Net.Http.Headers;
 using System.Net.Http.Json;
+using System.Security.Cryptography;
+using System.Text;
 using System.Text.Json.Nodes;
+using Qc.Evidence;
 using Qc.Service.Tests.Support;
 using Xunit;
 
@@ -90,6 +94,46 @@ public sealed class CertificateTests(ServiceFixture service)
         pdf[pdf.Length / 2] ^= 1;
         using var form = new MultipartFormDataContent { { new ByteArrayContent(pdf), "file", "certificate.pdf" } };
         Assert.Contains("byte for byte", await (await stranger.PostAsync("/verify", form)).Content.ReadAsStringAsync(), StringComparison.Ordinal);
+    }
+
+    [Fact]
+    public async Task The_archive_of_a_lot_is_whole_and_any_change_of_it_is_found()
+    {
+        (string lot, string number) = await ReleasedAsync();
+        byte[] zip = await service.Lims.GetByteArrayAsync($"/api/v1/lots/{lot}/archive");
+        var files = new Dictionary<string, byte[]>();
+        using (var archive = new ZipArchive(new MemoryStream(zip)))
+        {
+            foreach (ZipArchiveEntry entry in archive.Entries)
+            {
+                using var bytes = new MemoryStream();
+                await (await entry.OpenAsync()).CopyToAsync(bytes);
+                files[entry.FullName] = bytes.ToArray();
+            }
+        }
+
+        HttpClient auditor = await service.AsAsync(ServiceFixture.Auditor);
+        using var key = ECDsa.Create();
+        key.ImportFromPem(await auditor.GetStringAsync("/api/v1/audit/key"));
+        Verification whole = ArchiveManifest.Verify(files, key);
+        Assert.True(whole.IsValid, whole.Message);
+        Assert.Equal(await service.Lims.GetByteArrayAsync($"/api/v1/lots/{lot}/spectra/1/original"), files["spectra/1.dx"]);
+        Assert.Contains($"certificates/{number}.pdf", files.Keys);
+        Assert.Contains("href=\"spectra/1.dx\"", Encoding.UTF8.GetString(files["index.html"]), StringComparison.Ordinal);
+        Assert.True(files.Keys.Count(n => n.StartsWith("proofs/", StringComparison.Ordinal)) >= 5);
+        foreach (string name in files.Keys.ToArray())
+        {
+            byte[] genuine = files[name];
+            files[name] = [.. genuine[..^1], (byte)(genuine[^1] ^ 1)];
+            Assert.False(ArchiveManifest.Verify(files, key).IsValid, name);
+            files.Remove(name);
+            Assert.False(ArchiveManifest.Verify(files, key).IsValid, name);
+            files[name] = genuine;
+        }
+
+        files["extra.txt"] = [1];
+        Assert.False(ArchiveManifest.Verify(files, key).IsValid);
+        await (await service.Lims.GetAsync("/api/v1/lots/none/archive")).ProblemAsync(404, "not-found");
     }
 
     [Fact]

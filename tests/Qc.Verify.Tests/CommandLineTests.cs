@@ -47,6 +47,35 @@ public sealed class CommandLineTests : IDisposable
     }
 
     [Fact]
+    public void An_archive_is_verified_and_one_with_an_added_file_is_refused()
+    {
+        string pem = Write("key.pem", Encoding.ASCII.GetBytes(key.ExportSubjectPublicKeyInfoPem()));
+        var files = new Dictionary<string, byte[]> { ["spectra/1.dx"] = [1, 2, 3] };
+        byte[] manifest = ArchiveManifest.Write("L1", files);
+        files[ArchiveManifest.FileName] = manifest;
+        files[ArchiveManifest.SignatureName] = Encoding.ASCII.GetBytes(ArchiveManifest.Sign(manifest, key));
+        Assert.Equal(0, Run("archive", Write("lot.zip", Zip()), "--key", pem).Code);
+        files["note.txt"] = [1];
+        Assert.Equal(1, Run("archive", Write("lot.zip", Zip()), "--key", pem).Code);
+        Assert.Equal(1, Run("archive", Write("lot.zip", [1, 2, 3]), "--key", pem).Code);
+
+        byte[] Zip()
+        {
+            using var zip = new MemoryStream();
+            using (var archive = new System.IO.Compression.ZipArchive(zip, System.IO.Compression.ZipArchiveMode.Create, leaveOpen: true))
+            {
+                foreach ((string name, byte[] bytes) in files)
+                {
+                    using Stream entry = archive.CreateEntry(name).Open();
+                    entry.Write(bytes);
+                }
+            }
+
+            return zip.ToArray();
+        }
+    }
+
+    [Fact]
     public void A_proof_is_verified_and_refused_under_another_key()
     {
         byte[] leaf = MerkleTree.LeafHash(Entry().ToCanonicalBytes());

@@ -41,8 +41,8 @@ export interface Decision {
   readonly findings: readonly FindingDecision[];
 }
 
-export const signIn = (user: string, password: string): Promise<void> =>
-  send("POST", "/api/v1/session", { user, password });
+export const signIn = (user: string, password: string, code: string): Promise<void> =>
+  send("POST", "/api/v1/session", { user, password, ...(code === "" ? {} : { code }) });
 
 export const signOut = (): Promise<void> => send("DELETE", "/api/v1/session");
 

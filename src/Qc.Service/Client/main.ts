@@ -25,7 +25,7 @@ function next(): string {
 
 const forms: Record<string, (form: HTMLFormElement) => void> = {
   "sign-in": (form) => mountForm(form, async (data) => {
-    await api.signIn(text(data, "user").trim(), text(data, "password"));
+    await api.signIn(text(data, "user").trim(), text(data, "password"), text(data, "code").trim());
     location.assign(next());
   }),
   "sign-out": (form) => mountForm(form, async () => {

@@ -107,7 +107,7 @@ public static class QcHost
         services.AddDbContextWithWolverineIntegration<QcDbContext>(b => QcDbContext.Configure(b, application), "queue");
         services.AddScoped<CreateProduct>().AddScoped<ReadProduct>().AddScoped<DraftSpecification>().AddScoped<ApproveSpecification>().AddScoped<ManageReferences>()
             .AddScoped<SubmitLot>().AddScoped<ReadLots>().AddScoped<LotChecker>().AddScoped<DecideLot>().AddScoped<IssueCertificate>()
-            .AddScoped<SignedHeads>().AddScoped<ManagePeople>().AddScoped<SigningDesk>().AddScoped<EndCertificate>();
+            .AddScoped<SignedHeads>().AddScoped<ManagePeople>().AddScoped<SigningDesk>().AddScoped<EndCertificate>().AddScoped<LotArchive>();
         services.AddHostedService<IssueDueCertificates>();
         services.AddSingleton<AccessLog>().AddHttpContextAccessor().AddRateLimiter(RateLimits.Add);
         services.AddIdentity<Person, IdentityRole>(identity =>
@@ -120,7 +120,10 @@ public static class QcHost
                 identity.Lockout.MaxFailedAccessAttempts = 5;
                 identity.Lockout.DefaultLockoutTimeSpan = TimeSpan.FromMinutes(15);
             })
-            .AddEntityFrameworkStores<QcDbContext>().AddDefaultTokenProviders();
+            .AddEntityFrameworkStores<QcDbContext>().AddDefaultTokenProviders().AddPasswordValidator<CommonPasswords>();
+
+        // A session that was ended ends with the next request, not at the next half hour.
+        services.Configure<SecurityStampValidatorOptions>(stamp => stamp.ValidationInterval = TimeSpan.Zero);
         services.ConfigureApplicationCookie(cookie =>
         {
             cookie.Cookie.Name = "qc-session";
@@ -205,6 +208,7 @@ public static class QcHost
         });
         RouteGroupBuilder api = app.MapGroup("/api/v1");
         api.MapSession();
+        api.MapSecondFactor();
         api.MapProducts();
         api.MapSpecifications();
         api.MapReferences();

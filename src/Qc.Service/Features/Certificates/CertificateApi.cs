@@ -20,6 +20,10 @@ internal static class CertificateApi
         api.MapGet("/lots/{id}/certificate", ReadAsync).WithTags("Certificates").RequireAuthorization(Policies.ReadLots)
             .Produces(200, contentType: "application/pdf").WithProblems(401, 403, 404, 409)
             .WithSummary("The newest signed PDF; Accept: application/json gives the same data, and whether it still holds");
+        api.MapGet("/lots/{id}/archive", async (string id, LotArchive archive, CancellationToken cancellation) =>
+            await archive.MakeAsync(id, cancellation) is { } zip ? Results.File(zip, "application/zip", $"lot-{id}.zip") : Problem.NotFound("lot").ToResult())
+            .WithTags("Lots").RequireAuthorization(Policies.ReadLots).Produces(200, contentType: "application/zip").WithProblems(401, 403, 404)
+            .WithSummary("Everything of a lot in one zip that opens offline; qc-verify archive checks it");
         RouteGroupBuilder one = api.MapGroup("/certificates/{number}").WithTags("Certificates");
         one.MapGet("/", OneAsync).RequireAuthorization(Policies.ReadLots).Produces(200, contentType: "application/pdf").WithProblems(401, 403, 404)
             .WithSummary("A certificate by its number, superseded and withdrawn ones too");

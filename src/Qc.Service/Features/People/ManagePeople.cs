@@ -1,3 +1,4 @@
+using System.Security.Cryptography;
 using System.Text.Json.Nodes;
 using Microsoft.AspNetCore.Identity;
 using Microsoft.EntityFrameworkCore;
@@ -18,11 +19,24 @@ public sealed record PersonRequest
     /// <summary>Name as printed beside signatures.</summary>
     public required string PrintedName { get; init; }
 
-    /// <summary>First password.</summary>
-    public required string Password { get; init; }
+    /// <summary>First password; where left out, one is made, shown once, and must be changed at the first sign-in.</summary>
+    public string? Password { get; init; }
+
+    /// <summary>Whether the first password must be changed at the first sign-in; always so for one that was made here.</summary>
+    public bool MustChangePassword { get; init; }
 
     /// <summary>Roles.</summary>
     public required IReadOnlyList<string> Roles { get; init; }
+}
+
+/// <summary>An invitation: the first password, shown this once.</summary>
+public sealed record InvitationDto(string User, string FirstPassword);
+
+/// <summary>Why something of a person is ended.</summary>
+public sealed record EndPersonRequest
+{
+    /// <summary>Why.</summary>
+    public required string Reason { get; init; }
 }
 
 /// <summary>A new LIMS key.</summary>
@@ -69,8 +83,8 @@ public sealed class ManagePeople(UserManager<Person> people, RoleManager<Identit
             }
         }
 
-        var person = new Person { UserName = request.User, PrintedName = request.PrintedName, LockoutEnabled = true };
-        IdentityResult created = await people.CreateAsync(person, request.Password);
+        var person = new Person { UserName = request.User, PrintedName = request.PrintedName, LockoutEnabled = true, MustChangePassword = request.MustChangePassword };
+        IdentityResult created = await people.CreateAsync(person, request.Password ?? "");
         if (!created.Succeeded)
         {
             IdentityError error = created.Errors.First();
@@ -96,6 +110,42 @@ public sealed class ManagePeople(UserManager<Person> people, RoleManager<Identit
             cancellation);
         await transaction.CommitAsync(cancellation);
         return person;
+    }
+
+    /// <summary>Makes an account with a first password that is in the answer and nowhere else, and serves once.</summary>
+    public async Task<Outcome<InvitationDto>> InviteAsync(PersonRequest request, string actor, CancellationToken cancellation)
+    {
+        string password = Convert.ToHexStringLower(RandomNumberGenerator.GetBytes(12));
+        Outcome<Person> made = await AddAsync(request with { Password = password, MustChangePassword = true }, actor, cancellation);
+        return made.Problem is { } problem ? problem : new InvitationDto(request.User, password);
+    }
+
+    /// <summary>Ends every session of a person; closes the account, or turns its one-time codes off, where asked to.</summary>
+    public async Task<Outcome<string>> EndAsync(string user, bool close, bool secondFactorOff, string reason, string actor, CancellationToken cancellation)
+    {
+        if (string.IsNullOrWhiteSpace(reason))
+        {
+            return Problem.InvalidField("/reason", "Say why.");
+        }
+
+        if (await people.FindByNameAsync(user) is not { } person)
+        {
+            return Problem.NotFound("person");
+        }
+
+        await using var transaction = await context.Database.BeginTransactionAsync(cancellation);
+        person.IsActive &= !close;
+        if (secondFactorOff)
+        {
+            await people.SetTwoFactorEnabledAsync(person, false);
+            await people.ResetAuthenticatorKeyAsync(person);
+        }
+
+        await people.UpdateSecurityStampAsync(person);
+        string action = close ? "person.closed" : secondFactorOff ? "second-factor.off" : "sessions.ended";
+        await context.SaveWithAuditAsync([new AuditDraft(actor, action, "person", person.UserName!, reason)], cancellation);
+        await transaction.CommitAsync(cancellation);
+        return person.UserName!;
     }
 
     /// <summary>Makes a LIMS key; its text is in the answer and nowhere else.</summary>

@@ -13,7 +13,13 @@ internal static class PeopleApi
     {
         RouteGroupBuilder group = api.MapGroup("").WithTags("People").RequireAuthorization(Policies.Administer);
         group.MapPost("/people", AddAsync).Accepts<PersonRequest>("application/json").Produces(201).WithProblems(400, 401, 403, 415, 422)
-            .WithSummary("Makes an account");
+            .WithSummary("Makes an account; without a password, an invitation whose first password is shown once");
+        group.MapPost("/people/{user}/end-sessions", (string user, HttpRequest request, ManagePeople manage, ClaimsPrincipal who, CancellationToken c) => EndAsync(user, false, false, request, manage, who, c))
+            .Accepts<EndPersonRequest>("application/json").Produces(204).WithProblems(400, 401, 403, 404, 415, 422).WithSummary("Ends every session of a person");
+        group.MapPost("/people/{user}/close", (string user, HttpRequest request, ManagePeople manage, ClaimsPrincipal who, CancellationToken c) => EndAsync(user, true, false, request, manage, who, c))
+            .Accepts<EndPersonRequest>("application/json").Produces(204).WithProblems(400, 401, 403, 404, 415, 422).WithSummary("Closes an account; it is never removed or given to another");
+        group.MapPost("/people/{user}/second-factor-off", (string user, HttpRequest request, ManagePeople manage, ClaimsPrincipal who, CancellationToken c) => EndAsync(user, false, true, request, manage, who, c))
+            .Accepts<EndPersonRequest>("application/json").Produces(204).WithProblems(400, 401, 403, 404, 415, 422).WithSummary("Turns a person's one-time codes off");
         group.MapPost("/keys", AddKeyAsync).Accepts<KeyRequest>("application/json").Produces<KeyDto>(201).WithProblems(400, 401, 403, 415, 422)
             .WithSummary("Makes a LIMS key; its text is shown once");
         group.MapGet("/keys", ListKeysAsync).Produces<IReadOnlyList<KeyDto>>().WithProblems(401, 403).WithSummary("Lists LIMS keys");
@@ -25,9 +31,23 @@ internal static class PeopleApi
     private static async Task<IResult> AddAsync(HttpRequest request, ManagePeople manage, ClaimsPrincipal user, CancellationToken cancellation)
     {
         Outcome<PersonRequest> body = await JsonBody.ReadAsync<PersonRequest>(request, cancellation);
+        if (body.Problem is { } problem)
+        {
+            return problem.ToResult();
+        }
+
+        return body.Value!.Password is null
+            ? (await manage.InviteAsync(body.Value, Caller.Name(user), cancellation)).ToResult(i => Results.Json(i, statusCode: 201))
+            : (await manage.AddAsync(body.Value, Caller.Name(user), cancellation)).ToResult(p => Results.Json(new { user = p.UserName }, statusCode: 201));
+    }
+
+    private static async Task<IResult> EndAsync(
+        string user, bool close, bool secondFactorOff, HttpRequest request, ManagePeople manage, ClaimsPrincipal who, CancellationToken cancellation)
+    {
+        Outcome<EndPersonRequest> body = await JsonBody.ReadAsync<EndPersonRequest>(request, cancellation);
         return body.Problem is { } problem
             ? problem.ToResult()
-            : (await manage.AddAsync(body.Value!, Caller.Name(user), cancellation)).ToResult(p => Results.Json(new { user = p.UserName }, statusCode: 201));
+            : (await manage.EndAsync(user, close, secondFactorOff, body.Value!.Reason, Caller.Name(who), cancellation)).ToResult(_ => Results.NoContent());
     }
 
     private static async Task<IResult> AddKeyAsync(HttpRequest request, ManagePeople manage, ClaimsPrincipal user, CancellationToken cancellation)
