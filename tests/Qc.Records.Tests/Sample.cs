@@ -46,6 +46,10 @@ internal static class Sample
             Id = Ids.New(At), LotId = lot.Id, Number = 1, EngineVersion = "0", Verdict = "pass", Unreadable = false, Unsuitable = false, Summary = "",
             ReportJson = "{}", ReportSha256 = "", RequestSha256 = "", DurationMilliseconds = 1, At = At,
         };
+        var reference = new ProductReference
+        {
+            Id = Ids.New(At), ProductId = product.Id, Number = 1, LotId = lot.Id, ComputationId = computation.Id, ConstantsJson = "{}", ProposedAt = At, ProposedBy = "person:owner",
+        };
         var key = new LimsKey { Id = Ids.New(At), Name = "LIMS", SecretSha256 = "", Scopes = "lots:write", CreatedAt = At, CreatedBy = "person:admin" };
         context.AddRange(
             product,
@@ -61,6 +65,8 @@ internal static class Sample
             new Review { Id = Ids.New(At), LotId = lot.Id, Number = 1, ComputationId = computation.Id, Decision = "release", Reason = "in order", FindingsJson = "[]", At = At, By = "person:r", SignatureId = signature.Id },
             Certificate(lot.Id, new CertificateNumber(2001, 1)),
             new CertificateEvent { Id = Ids.New(At), CertificateNumber = "QC-2001-000001", Kind = CertificateEvent.Withdrawn, Reason = "wrong label", At = At, By = "person:qu", SignatureId = signature.Id },
+            reference,
+            new ProductReferenceEvent { Id = Ids.New(At), ReferenceId = reference.Id, Kind = ProductReferenceEvent.Released, At = At, By = "person:qu", SignatureId = signature.Id },
             key,
             new LimsKeyRevocation { KeyId = key.Id, At = At, By = "person:admin" },
             new TreeHeadRow { Size = 1, At = At, RootHash = new byte[32], SignedText = "", Signature = "" });
