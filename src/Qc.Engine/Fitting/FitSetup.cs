@@ -53,7 +53,9 @@ internal sealed class FitSetup
         }
 
         var setup = new FitSetup(model, product, standard, []);
-        setup.AddKnown(claims.Present, frequency);
+        // Water moves; a signal that the product takes in this start is not water's.
+        bool waterIsTaken = places.SignalOf.Any(s => s >= 0 && claims.IsWater(s));
+        setup.AddKnown([.. claims.Present.Where(k => k.Role != "water" || !waterIsTaken)], frequency);
         return setup;
     }
 
@@ -68,7 +70,7 @@ internal sealed class FitSetup
             int width = Model.WidthParameter;
             if (substance.Role is "water" or "solvent" or "reference")
             {
-                double ln = Model.Parameters[width].Start;
+                double ln = Math.Max(Model.Parameters[width].Start, Math.Log(Math.Max(substance.WidthHertz, 1e-3)));
                 width = Model.Add(new FitParameter($"ln width {substance.Name}", ln, ln, 1, ln - 2, ln + 3.5, 0.5));
             }
 

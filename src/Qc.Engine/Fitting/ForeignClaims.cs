@@ -51,17 +51,19 @@ internal sealed class ForeignClaims
         foreach (KnownSubstance known in input.Known.Where(k => k.Role != "impurity"))
         {
             var found = ImmutableArray.CreateBuilder<KnownSignal>();
+            double widthHertz = 0;
             foreach (KnownSignal expected in known.Signals)
             {
                 if (claims.Claim(signals, known, expected, frequency) is { } place)
                 {
-                    found.Add(expected with { ShiftPpm = place });
+                    found.Add(expected with { ShiftPpm = place.Ppm });
+                    widthHertz = Math.Max(widthHertz, place.WidthHertz);
                 }
             }
 
             if (found.Count > 0)
             {
-                present.Add(known with { Signals = found.ToImmutable() });
+                present.Add(known with { Signals = found.ToImmutable(), WidthHertz = widthHertz });
             }
         }
 
@@ -71,8 +73,8 @@ internal sealed class ForeignClaims
         return claims;
     }
 
-    /// <summary>Finds the maximum nearest to an expected place and books its area; null where there is none.</summary>
-    private double? Claim(ImmutableArray<MeasuredSignal> signals, KnownSubstance known, KnownSignal expected, double frequencyMHz)
+    /// <summary>Finds the maximum nearest to an expected place and books its area: where it is, and how wide where it stands alone; null where there is none.</summary>
+    private (double Ppm, double WidthHertz)? Claim(ImmutableArray<MeasuredSignal> signals, KnownSubstance known, KnownSignal expected, double frequencyMHz)
     {
         double reachPpm = 3 * expected.TolerancePpm;
         double spanHertz = expected.Lines[0].OffsetHertz - expected.Lines[^1].OffsetHertz;
@@ -113,7 +115,7 @@ internal sealed class ForeignClaims
                 _water = bestSignal;
             }
 
-            return alone ? best.Hertz / frequencyMHz : null;
+            return alone ? (best.Hertz / frequencyMHz, best.WidthHertz) : null;
         }
 
         double strongest = expected.Lines.Max(l => l.Intensity) / expected.Protons;
@@ -127,7 +129,7 @@ internal sealed class ForeignClaims
 
         _area[bestSignal] += alone ? 0 : area;
         _uncertainty[bestSignal] += alone ? signal.Area : 0.6 * area;
-        return best.Hertz / frequencyMHz;
+        return (best.Hertz / frequencyMHz, alone && expected.Lines.Length == 1 ? best.WidthHertz : 0);
     }
 
     private void ClaimInternalStandard(FitInput input, ImmutableArray<MeasuredSignal> signals)

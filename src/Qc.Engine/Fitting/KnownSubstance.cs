@@ -14,4 +14,8 @@ public sealed record KnownSignal(
 /// <param name="Name">Its name.</param>
 /// <param name="Role">"solvent", "water", "reference" or "impurity".</param>
 /// <param name="Signals">Its signals; exchangeable ones left out.</param>
-public sealed record KnownSubstance(string Name, string Role, ImmutableArray<KnownSignal> Signals);
+public sealed record KnownSubstance(string Name, string Role, ImmutableArray<KnownSignal> Signals)
+{
+    /// <summary>Width at half height as seen in the spectrum, in Hz, where its line stands alone; else 0.</summary>
+    public double WidthHertz { get; init; }
+}

@@ -230,6 +230,11 @@ internal sealed class ModelFitter
     /// <summary>Weighted, tied, non-negative least squares for the amplitudes.</summary>
     private double[] SolveAmplitudes(ColumnSet columns, double[] previous)
     {
+        if (_linearCount == 0)
+        {
+            return []; // Nothing of the structure, and no other substance, has signal in this spectrum.
+        }
+
         int amplitudes = _model.Amplitudes.Count;
         var normal = DenseMatrix.Create(_linearCount, _linearCount, 0);
         var right = DenseVector.Create(_linearCount, 0);

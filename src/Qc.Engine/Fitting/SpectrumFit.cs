@@ -47,7 +47,7 @@ public static class SpectrumFit
                 state = Run(input, setup, stretches, broadened, stage, width, state, cancellation);
             }
 
-            double cost = state!.Cost + (AbsentGroups(start) * AbsentGroupCost);
+            double cost = state!.Cost + start.Cost + (AbsentGroups(start) * AbsentGroupCost);
             if (cost < bestCost)
             {
                 (bestSetup, bestState, bestCost) = (setup, state, cost);

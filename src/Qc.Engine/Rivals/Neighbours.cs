@@ -139,9 +139,13 @@ public static class Neighbours
     private sealed class KnownStructures(Molecule expected, RivalFilters filters)
     {
         private readonly string _skeleton = StructureForm.SkeletonOf(expected);
+        private readonly string _chargesAndParts = ChargesAndParts.Of(expected);
         private readonly HashSet<string> _forms = [];
 
         public bool Admit(Molecule structure) =>
-            _forms.Add(StructureForm.Of(structure)) && StructureForm.SkeletonOf(structure) != _skeleton && filters.Objection(structure) is null;
+            _forms.Add(StructureForm.Of(structure))
+            && StructureForm.SkeletonOf(structure) != _skeleton
+            && ChargesAndParts.Of(structure) == _chargesAndParts
+            && filters.Objection(structure) is null;
     }
 }

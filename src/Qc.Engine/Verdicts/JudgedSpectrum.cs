@@ -59,6 +59,20 @@ internal sealed record JudgedSpectrum
     /// <summary>Relaxation delay plus acquisition time in seconds, where the file states both.</summary>
     public double? RepetitionTimeSeconds => Processing.RelaxationDelaySeconds + Processing.AcquisitionTimeSeconds;
 
+    /// <summary>
+    /// Exchangeable protons that were not found by themselves and may lie in a region: their place is known to two standard
+    /// uncertainties, at least a ppm. They may be exchanged away as well, so they excuse signal but never stand in for any.
+    /// </summary>
+    public double MayHide(Interval regionPpm) => Expectation.Protons.Groups
+        .Where(g => g.Lability == Lability.Exchangeable && !Fit.Groups[g.Index].Found)
+        .Where(g =>
+        {
+            ExpectedShift shift = Expectation.Shifts[g.Index];
+            double reach = Math.Max(1, 2 * shift.StandardUncertaintyPpm);
+            return regionPpm.High > shift.ShiftPpm - reach && regionPpm.Low < shift.ShiftPpm + reach;
+        })
+        .Sum(g => (double)g.Count);
+
     /// <summary>Protons of the product that the window shows and that do not exchange.</summary>
     public double ExpectedProtons => Expectation.Protons.Groups
         .Where(g => IsAsserted(g))

@@ -94,4 +94,34 @@ public class NeighboursTests(StructureFixture structures, ITestOutputHelper outp
         string form = StructureForm.Of(structures.Read(same));
         Assert.DoesNotContain(Neighbours.Of(structures.Read(expected), new NeighbourOptions()).Candidates, c => StructureForm.Of(c.Structure) == form);
     }
+
+    [Fact]
+    public void A_sulfone_stays_a_sulfone()
+    {
+        RivalCandidates found = Neighbours.Of(structures.Read("CS(=O)(=O)CC"), EditsOnly);
+        Assert.NotEmpty(found.Candidates);
+        Assert.All(found.Candidates, c =>
+        {
+            Atom sulfur = c.Structure.Atoms.Single(a => a.AtomicNumber == 16);
+            Assert.Equal(0, sulfur.HydrogenCount);
+            Assert.Equal(2, c.Structure.BondsOf(sulfur.Index).Count(b => c.Structure.Bonds[b].Order == 2 && c.Structure.Atoms[c.Structure.Other(b, sulfur.Index)].AtomicNumber == 8));
+        });
+    }
+
+    [Theory]
+    [InlineData("Cc1ncc([N+](=O)[O-])n1CCO", "a nitro group stays a nitro group")]
+    [InlineData("CN(C)C(=N)NC(=N)N.Cl", "a hydrochloride keeps its chloride")]
+    public void Edits_invent_no_charges_and_exchange_no_atoms_between_the_parts_of_a_salt(string smiles, string why)
+    {
+        RivalCandidates found = Neighbours.Of(structures.Read(smiles), EditsOnly);
+        Assert.True(found.Candidates.Length > 3, why);
+        Assert.All(found.Candidates, c =>
+        {
+            Assert.All(c.Structure.Atoms.Where(a => a.FormalCharge == 1), a =>
+                Assert.Equal([(1, 1), (1, 2)], c.Structure.BondsOf(a.Index)
+                    .Where(b => c.Structure.Atoms[c.Structure.Other(b, a.Index)].AtomicNumber == 8)
+                    .Select(b => (1, c.Structure.Bonds[b].Order)).Order()));
+            Assert.All(c.Structure.Atoms.Where(a => a.AtomicNumber == 17), a => Assert.Empty(c.Structure.BondsOf(a.Index)));
+        });
+    }
 }
