@@ -6,6 +6,7 @@ internal static class Reports
     private static readonly Dictionary<string, Action<string[]>> Subjects = new(StringComparer.Ordinal)
     {
         ["lines"] = LineReport.Print,
+        ["processing"] = ProcessingReport.Print,
     };
 
     /// <summary>A line of a report, numbers in the invariant culture.</summary>

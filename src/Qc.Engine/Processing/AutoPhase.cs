@@ -1,3 +1,4 @@
+using System.Collections.Immutable;
 using System.Numerics;
 using MathNet.Numerics.IntegralTransforms;
 
@@ -11,7 +12,8 @@ namespace Qc.Engine.Processing;
 /// two lines lay under each other, a₁·a₂ at the one and −a₂·a₁ at the other, cancelling. φ1 is where the phases of all clusters agree
 /// best, a periodogram over its reach with the least φ1 preferred; then both are refined by least squares, a cluster weighing
 /// by the noise of its phase and by what lines that are not quite symmetric may be off, large deviations weighing less
-/// (Huber 1964).
+/// (Huber 1964). Last, sums of lines are fitted around the clusters (<see cref="ClusterPhase"/>), and the straight line is laid
+/// through their phases.
 /// </summary>
 internal static class AutoPhase
 {
@@ -19,22 +21,24 @@ internal static class AutoPhase
     private const double FloorInNoise = 5;
     private const double FloorOfTop = 0.05;
     private const double ShapeRadians = 0.02;
+    private const double FittedShapeRadians = 0.006;
     private const double HuberRadians = 0.1;
-    private const int ThinPoints = 8192;
-    private const double NegativeInNoise = 3;
-    private const double ImperfectShare = 3e-4;
-    private const double LargestStepRadians = 0.05;
-    private const double SmallestStepRadians = 2e-4;
+    private const int PolishRounds = 5;
+    private const double SettledRadians = 0.002;
+    private const int Parts = 16;
+    private const int WindowsInAPart = 4;
 
-    private readonly record struct Cluster(double Place, double Phase, double Variance);
+    /// <summary>A cluster of lines: its stretch, its centre from 0 to 1 over the spectrum, its phase.</summary>
+    private readonly record struct Cluster(int First, int Last, double Place, double Phase, double Variance);
 
     /// <summary>Phases in radians; zero where the spectrum holds no signal.</summary>
     /// <param name="spectrum">The spectrum, from high to low frequency, of an FID filled to at least twice its length.</param>
     /// <param name="dwellSeconds">Time between the points of that FID.</param>
     /// <param name="firstOrderReachRadians">Largest φ1 that is considered.</param>
     /// <param name="firstOrderPriorRadians">Standard deviation granted to φ1 before the data are seen.</param>
+    /// <param name="stride">How many times its length the FID was filled to: of so many points one is new.</param>
     public static (double Zero, double First) Find(
-        Complex[] spectrum, double dwellSeconds, double firstOrderReachRadians, double firstOrderPriorRadians)
+        Complex[] spectrum, double dwellSeconds, double firstOrderReachRadians, double firstOrderPriorRadians, int stride = 2)
     {
         List<Cluster> clusters = FindClusters(FadedIn(spectrum, FadeInSeconds / dwellSeconds));
         if (clusters.Count == 0)
@@ -62,74 +66,75 @@ internal static class AutoPhase
         }
 
         (double zero, first) = Refine(clusters, -Agreement(clusters, first).Phase, first, firstOrderPriorRadians);
-        return Polish(spectrum, clusters, zero, first, firstOrderPriorRadians);
+        return Polish(spectrum, stride, clusters, zero, first, firstOrderPriorRadians);
     }
 
     /// <summary>
-    /// Multiplets that are lopsided mislead the sums by a few degrees. Dispersion also shows as negative tails: the sum of
-    /// squares of what is negative beyond the noise, in units of the noise and of a small share of the highest point, is added to the misfit
-    /// of the clusters and the whole made least by shrinking steps. Without noise to speak of the tails decide, else the clusters.
+    /// Multiplets that are lopsided mislead the sums by some degrees, neighbours and what lies beneath by more. So windows around the clusters
+    /// are fitted as sums of lines, each after the lines of the others were taken off, and the straight line is laid through the
+    /// phases found; again until it settles, as the lines show best in phase.
     /// </summary>
     private static (double Zero, double First) Polish(
-        Complex[] spectrum, List<Cluster> clusters, double zero, double first, double prior)
+        Complex[] spectrum, int stride, List<Cluster> rough, double zero, double first, double prior)
     {
-        Complex[] thin = Thin(spectrum);
-        double noise = NoiseEstimate.Of([.. thin.Select(c => c.Real)]).StandardDeviation;
-        double scale = (noise * noise) + Math.Pow(ImperfectShare * thin.Max(c => c.Magnitude), 2);
-        double Cost(double z, double f) =>
-            (Negative(thin, z, f, NegativeInNoise * noise) / scale) + clusters.Sum(c => Misfit(c, z, f)) + (f * f / (prior * prior));
-
-        double best = Cost(zero, first);
-        for (double step = LargestStepRadians; step > SmallestStepRadians;)
+        List<FittedPhase> models = [];
+        for (int round = 0; round < PolishRounds; round++)
         {
-            bool better = false;
-            foreach ((double dz, double df) in new[] { (step, 0), (-step, 0), (0, step), (0, -step), (step, -2 * step), (-step, 2 * step) })
+            models = Fitted(Apply(spectrum, zero, first), stride, rough, models);
+            List<Cluster> whole =
+            [
+                .. models.Select(m => new Cluster(
+                    0, 0, m.Place / spectrum.Length, m.Phase - zero - (first * m.Place / spectrum.Length), m.Variance + (FittedShapeRadians * FittedShapeRadians))),
+            ];
+            if (whole.Count == 0)
             {
-                double cost = Cost(zero + dz, first + df);
-                if (cost < best)
-                {
-                    (best, zero, first, better) = (cost, zero + dz, first + df, true);
-                }
+                break;
             }
 
-            step *= better ? 1 : 0.5;
+            (double newZero, double newFirst) = Refine(whole, zero, first, prior);
+            double change = Math.Abs(newZero - zero) + Math.Abs(newFirst - first);
+            models = [.. models.Select(m => m with { Phase = m.Phase + newZero - zero + ((newFirst - first) * m.Place / spectrum.Length) })];
+            (zero, first) = (newZero, newFirst);
+            if (round > 0 && change < SettledRadians)
+            {
+                break;
+            }
         }
 
         return (zero, first);
     }
 
-    private static double Misfit(Cluster c, double zero, double first)
+    /// <summary>Fits of the windows that tell most in each part of the spectrum, the surest first.</summary>
+    /// <param name="phased">The spectrum as it is phased so far.</param>
+    /// <param name="stride">How many times its length the FID was filled to.</param>
+    /// <param name="rough">Where there are lines.</param>
+    /// <param name="before">Fits of the round before, turned with the spectrum.</param>
+    private static List<FittedPhase> Fitted(Complex[] phased, int stride, List<Cluster> rough, List<FittedPhase> before)
     {
-        double left = Math.Abs(Math.IEEERemainder(c.Phase + zero + (first * c.Place), 2 * Math.PI));
-        return (left < HuberRadians ? left * left : HuberRadians * ((2 * left) - HuberRadians)) / c.Variance;
-    }
-
-    /// <summary>Sums of neighbouring points: the phase varies little over them, the tails stay.</summary>
-    private static Complex[] Thin(Complex[] spectrum)
-    {
-        int bin = Math.Max(1, spectrum.Length / ThinPoints);
-        var thin = new Complex[spectrum.Length / bin];
-        for (int i = 0; i < thin.Length * bin; i++)
+        double noise = NoiseEstimate.Of([.. phased.Select(c => c.Real)]).StandardDeviation;
+        IEnumerable<PhaseWindow> windows = rough.Select(c => PhaseWindow.Of(phased, c.First, c.Last, c.Variance, noise));
+        PhaseWindow[] chosen =
+        [
+            .. PhaseWindow.Merge(windows, phased.Length)
+                .GroupBy(w => (w.First + w.Last) * Parts / (2 * phased.Length))
+                .SelectMany(g => g.OrderBy(w => w.Variance).ThenBy(w => w.First).Take(WindowsInAPart))
+                .OrderBy(w => w.Variance).ThenBy(w => w.First),
+        ];
+        List<FittedPhase> models = [.. before];
+        var fitted = new List<FittedPhase>();
+        foreach (PhaseWindow w in chosen)
         {
-            thin[i / bin] += spectrum[i];
+            Complex[] values = phased[w.First..(w.Last + 1)];
+            models.RemoveAll(m => m.Place >= w.First && m.Place <= w.Last);
+            models.ForEach(m => m.TakeOff(values, w.First));
+            if (ClusterPhase.Of(values, w.First, stride, w.Lines, noise) is { } found && found.Lines.Any(l => l.Height > 0))
+            {
+                fitted.Add(found);
+                models.Add(found);
+            }
         }
 
-        return thin;
-    }
-
-    private static double Negative(Complex[] spectrum, double zero, double first, double allowed)
-    {
-        double sum = 0;
-        Complex turn = Complex.FromPolarCoordinates(1, zero);
-        Complex step = Complex.FromPolarCoordinates(1, first / spectrum.Length);
-        foreach (Complex value in spectrum)
-        {
-            double real = (value.Real * turn.Real) - (value.Imaginary * turn.Imaginary) + allowed;
-            sum += real < 0 ? real * real : 0;
-            turn *= step;
-        }
-
-        return sum;
+        return fitted;
     }
 
     /// <summary>Applies phases.</summary>
@@ -289,6 +294,6 @@ internal static class AutoPhase
         }
 
         double variance = noise * noise * square / Math.Max(sum.Magnitude * sum.Magnitude, 1e-300);
-        return new Cluster(place / square / spectrum.Length, sum.Phase, variance + (ShapeRadians * ShapeRadians));
+        return new Cluster(first, last, place / square / spectrum.Length, sum.Phase, variance + (ShapeRadians * ShapeRadians));
     }
 }

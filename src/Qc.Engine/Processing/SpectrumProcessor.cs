@@ -18,7 +18,7 @@ public static class SpectrumProcessor
     private const double DerivedDelayReachRadians = 6 * Math.PI;
     private const double StatedDelayReachRadians = Math.PI;
     private const double DerivedDelayPriorRadians = 4 * Math.PI;
-    private const double StatedDelayPriorRadians = 0.3;
+    private const double StatedDelayPriorRadians = Math.PI;
 
     /// <summary>Processes a measurement.</summary>
     public static ProcessingOutcome Process(Measurement measurement, ProcessingOptions options)
@@ -40,8 +40,9 @@ public static class SpectrumProcessor
                 transformed.Points,
                 fid.DwellSeconds,
                 derived ? DerivedDelayReachRadians : StatedDelayReachRadians,
-                derived ? DerivedDelayPriorRadians : StatedDelayPriorRadians);
-            steps.Add(Step("phase", "Phased so that the signals agree on being absorption; dispersion is odd about each line.", ("zeroDegrees", Degrees(zero)), ("firstDegrees", Degrees(first))));
+                derived ? DerivedDelayPriorRadians : StatedDelayPriorRadians,
+                Math.Max(1, transformed.Points.Length / fid.Real.Length));
+            steps.Add(Step("phase", "Phased so that the signals agree on being absorption; dispersion is odd about each line.", ("zeroDegrees", Degrees(zero)), ("firstDegrees", first * 180 / Math.PI)));
             intensity = [.. AutoPhase.Apply(transformed.Points, zero, first).Select(c => c.Real)];
             (firstPpm, ppmPerPoint) = (transformed.FirstPpm, transformed.PpmPerPoint);
         }
