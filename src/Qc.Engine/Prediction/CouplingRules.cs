@@ -52,10 +52,10 @@ internal static class CouplingRules
         return found.ToImmutable();
     }
 
-    private static Rule? Of(
+    private static RuledCoupling? Of(
         PerceivedMolecule molecule, ProtonSet setA, ProtonGroup groupA, ProtonSet setB, ProtonGroup groupB, string solvent)
     {
-        (int a, int b, int distance) = NearestAtoms(molecule, setA, setB);
+        (int a, int sideA, int b, int sideB, int distance) = NearestAtoms(molecule, setA, setB);
         bool exchanges = groupA.Lability == Lability.Exchangeable || groupB.Lability == Lability.Exchangeable;
         if (distance < 0 || (exchanges && solvent != SlowExchangeSolvent))
         {
@@ -77,11 +77,16 @@ internal static class CouplingRules
             return AcrossDoubleBond(molecule, a, Predictor.OrdinalOf(groupA), b, Predictor.OrdinalOf(groupB));
         }
 
+        if (distance == 1 && RingCouplings.Between(molecule, a, sideA, b, sideB) is { } onRing)
+        {
+            return onRing;
+        }
+
         bool isHindered = groupA.DiastereotopicPartner >= 0 || groupB.DiastereotopicPartner >= 0;
         return (distance == 1 && isHindered ? First(molecule, a, b, Hindered) : null) ?? First(molecule, a, b, Anywhere);
     }
 
-    private static Rule? AcrossDoubleBond(PerceivedMolecule molecule, int a, int ordinalA, int b, int ordinalB)
+    private static RuledCoupling? AcrossDoubleBond(PerceivedMolecule molecule, int a, int ordinalA, int b, int ordinalB)
     {
         if (OlefinGeometry.ProtonsAreCis(molecule, a, ordinalA, b, ordinalB) is { } areCis)
         {
@@ -98,41 +103,42 @@ internal static class CouplingRules
             : null;
     }
 
-    private static Rule? First(PerceivedMolecule molecule, int a, int b, string place)
-    {
-        foreach (PatternFact row in Rules.Rows.Where(row => row.Fact.Place == place))
-        {
-            if (Joins(molecule, row.Pattern, a, b) || Joins(molecule, row.Pattern, b, a))
-            {
-                return new Rule(row.Fact.Value, row.Fact.StandardUncertainty, row.Pattern.Span + BondsToProtons, row.Fact.Id);
-            }
-        }
+    /// <summary>The first row of a place that joins two atoms, written from either.</summary>
+    internal static RuledCoupling? First(PerceivedMolecule molecule, int a, int b, string place) =>
+        FirstWhere(place, row => Joins(molecule, row, a, b) || Joins(molecule, row, b, a));
 
-        return null;
-    }
+    /// <summary>The first row of a place that joins two atoms, written from the first.</summary>
+    internal static RuledCoupling? FirstFrom(PerceivedMolecule molecule, int from, int to, string place) =>
+        FirstWhere(place, row => Joins(molecule, row, from, to));
+
+    private static RuledCoupling? FirstWhere(string place, Func<EnvironmentPattern, bool> joins) =>
+        Rules.Rows.FirstOrDefault(row => row.Fact.Place == place && joins(row.Pattern)) is { } row
+            ? new RuledCoupling(row.Fact.Value, row.Fact.StandardUncertainty, row.Pattern.Span + BondsToProtons, row.Fact.Id)
+            : null;
 
     private static bool Joins(PerceivedMolecule molecule, EnvironmentPattern pattern, int from, int to) =>
         pattern.End < 0
             ? from == to && pattern.IsAt(molecule, from)
             : pattern.Matches(molecule, from).Any(match => match[pattern.End] == to);
 
-    private static (int A, int B, int Distance) NearestAtoms(PerceivedMolecule molecule, ProtonSet setA, ProtonSet setB)
+    private static (int A, int SideA, int B, int SideB, int Distance) NearestAtoms(PerceivedMolecule molecule, ProtonSet setA, ProtonSet setB)
     {
-        (int A, int B, int Distance) nearest = (-1, -1, -1);
-        foreach (int a in setA.Atoms)
+        (int A, int SideA, int B, int SideB, int Distance) nearest = (-1, -1, -1, -1, -1);
+        for (int i = 0; i < setA.Atoms.Length; i++)
         {
-            foreach (int b in setB.Atoms)
+            for (int j = 0; j < setB.Atoms.Length; j++)
             {
-                int distance = molecule.Distance(a, b, FarthestAtoms);
+                int distance = molecule.Distance(setA.Atoms[i], setB.Atoms[j], FarthestAtoms);
                 if (distance >= 0 && (nearest.Distance < 0 || distance < nearest.Distance))
                 {
-                    nearest = (a, b, distance);
+                    nearest = (setA.Atoms[i], setA.SideAt(i), setB.Atoms[j], setB.SideAt(j), distance);
                 }
             }
         }
 
         return nearest;
     }
-
-    private sealed record Rule(double Hertz, double StandardUncertaintyHertz, int Bonds, string Row);
 }
+
+/// <summary>What a row, or several, say of a coupling.</summary>
+internal sealed record RuledCoupling(double Hertz, double StandardUncertaintyHertz, int Bonds, string Row);

@@ -20,7 +20,17 @@ public enum Lability
 /// <param name="Group">Index of the chemically equivalent group it belongs to.</param>
 /// <param name="Atoms">Indices of the heavy atoms that bear the protons.</param>
 /// <param name="Count">Number of protons.</param>
-public sealed record ProtonSet(int Index, int Group, ImmutableArray<int> Atoms, int Count);
+public sealed record ProtonSet(int Index, int Group, ImmutableArray<int> Atoms, int Count)
+{
+    /// <summary>
+    /// For each atom of <see cref="Atoms"/>, 0 or 1 where the set holds just that one of a CH2's two protons
+    /// (counted as <see cref="Topicity"/> says), else -1. Empty means -1 throughout.
+    /// </summary>
+    public ImmutableArray<int> Sides { get; init; } = [];
+
+    /// <summary>The side of the proton on the atom at a position of <see cref="Atoms"/>.</summary>
+    public int SideAt(int position) => Sides.IsEmpty ? -1 : Sides[position];
+}
 
 /// <summary>Chemically equivalent protons (homotopic or enantiotopic): one shift.</summary>
 /// <param name="Index">Position in <see cref="ProtonGroups.Groups"/>.</param>

@@ -35,7 +35,8 @@ public static class Topicity
         {
             foreach (List<ProtonSite> set in MagneticSets.Of(frame, groups[g]))
             {
-                sets.Add(new ProtonSet(sets.Count, g, AtomsOf(set), set.Sum(site => site.Count)));
+                ImmutableArray<int> atoms = AtomsOf(set);
+                sets.Add(new ProtonSet(sets.Count, g, atoms, set.Sum(site => site.Count)) { Sides = [.. atoms.Select(atom => SideOf(set, atom))] });
             }
         }
 
@@ -69,6 +70,12 @@ public static class Topicity
 
     private static string Name(List<ProtonSite> group, bool hasPartner) =>
         string.Create(CultureInfo.InvariantCulture, $"H-{group[0].Atom + 1}{(hasPartner ? group[0].Side == 0 ? "a" : "b" : "")}");
+
+    private static int SideOf(List<ProtonSite> set, int atom)
+    {
+        List<ProtonSite> there = set.FindAll(site => site.Atom == atom);
+        return there.Count == 1 ? there[0].Side : -1;
+    }
 
     private static ImmutableArray<int> AtomsOf(List<ProtonSite> sites) => [.. sites.Select(site => site.Atom).Distinct().Order()];
 }

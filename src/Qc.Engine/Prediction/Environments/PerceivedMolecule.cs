@@ -12,6 +12,8 @@ internal sealed class PerceivedMolecule
     private readonly ImmutableArray<ImmutableArray<int>> _neighbours;
     private readonly ImmutableArray<ImmutableArray<int>> _ringsOf;
     private readonly Dictionary<(int From, int Root), Substituent> _substituents = [];
+    private readonly Dictionary<int, RingFaces?> _faces = [];
+    private readonly Dictionary<int, ChairBalance?> _chairs = [];
 
     /// <summary>Perceives a molecule.</summary>
     public PerceivedMolecule(Molecule molecule)
@@ -68,6 +70,30 @@ internal sealed class PerceivedMolecule
         {
             known = SubstituentVocabulary.Name(this, from, root);
             _substituents.Add((from, root), known);
+        }
+
+        return known;
+    }
+
+    /// <summary>The faces of a ring; null where the structure does not say who is on which.</summary>
+    public RingFaces? FacesOf(int ring)
+    {
+        if (!_faces.TryGetValue(ring, out RingFaces? known))
+        {
+            known = RingFaces.Of(Molecule, Ring(ring));
+            _faces.Add(ring, known);
+        }
+
+        return known;
+    }
+
+    /// <summary>The chairs of a ring; null where it has none or nothing fixes their balance.</summary>
+    public ChairBalance? ChairsOf(int ring)
+    {
+        if (!_chairs.TryGetValue(ring, out ChairBalance? known))
+        {
+            known = ChairBalance.Of(this, ring);
+            _chairs.Add(ring, known);
         }
 
         return known;
