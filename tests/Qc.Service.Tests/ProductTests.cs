@@ -124,6 +124,5 @@ public sealed class ProductTests(ServiceFixture service)
         string code = await Plant.ProductAsync(service);
         HttpClient owner = await service.AsAsync(ServiceFixture.MethodOwner);
         await (await owner.GetAsync($"/api/v1/products/{code}/specificity")).ProblemAsync(501, "not-built");
-        await (await owner.PostAsJsonAsync($"/api/v1/products/{code}/reference", new { })).ProblemAsync(501, "not-built");
     }
 }

@@ -19,6 +19,12 @@ public sealed record FitInput
     /// <summary>Its name.</summary>
     public string InternalStandardName { get; init; } = "";
 
+    /// <summary>
+    /// Share of the local signal that line-shape faults amount to in this spectrum, as the expected structure's fit showed
+    /// it; structures are compared at the same share. Null: worked out from this fit.
+    /// </summary>
+    public double? MisfitShare { get; init; }
+
     /// <summary>Residual solvent, water, reference and common impurities in the solvent of the spectrum.</summary>
     public ImmutableArray<KnownSubstance> Known { get; init; } = [];
 }

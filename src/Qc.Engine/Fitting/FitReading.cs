@@ -13,6 +13,7 @@ internal sealed class FitReading
 
     /// <summary>Most that the misfit of one signal counts in the evidence, in units of half a squared standard deviation.</summary>
     private const double LargestSignalMisfit = 60;
+    private const double LargestMisfitShare = 0.2;
     private readonly FitInput _input;
     private readonly ImmutableArray<MeasuredSignal> _signals;
     private readonly FitSetup _setup;
@@ -66,6 +67,7 @@ internal sealed class FitReading
         Modelled = [.. Modelled.Select((m, i) => m + processed.Intensity[i] - _input.Spectrum.Intensity[i])],
         Baseline = [.. processed.Intensity.Zip(_input.Spectrum.Intensity, (y, level) => y - level)],
         Converged = _state.Converged,
+        MisfitShare = MisfitShare(),
         LogEvidence = LogEvidence(),
     };
 
@@ -350,7 +352,7 @@ internal sealed class FitReading
     {
         Spectrum spectrum = _input.Spectrum;
         FitGrid whole = FitGrid.Lay(
-            spectrum, spectrum.Intensity, [spectrum.WindowPpm], TypicalWidthHertz, spectrum.NoiseStandardDeviation, SpectrumFit.FineMisfitShare);
+            spectrum, spectrum.Intensity, [spectrum.WindowPpm], TypicalWidthHertz, spectrum.NoiseStandardDeviation, MisfitShare());
         double areaPerProton = AreaOfExpectedProton();
         double sum = 0;
         foreach (MeasuredSignal signal in _signals)
@@ -368,6 +370,36 @@ internal sealed class FitReading
         }
 
         return sum;
+    }
+
+    /// <summary>
+    /// At strong signals no line shape is right to the noise. The share of the signal that this model leaves undrawn, where
+    /// it exceeds the usual one, is what shape faults amount to here; a structure that is wrong raises it too, which only
+    /// ever makes structures harder to tell apart.
+    /// </summary>
+    private double MisfitShare()
+    {
+        if (_input.MisfitShare is { } given)
+        {
+            return given;
+        }
+
+        Spectrum spectrum = _input.Spectrum;
+        double[] envelope = FitGrid.Envelope(spectrum.Intensity, Math.Max(5, 5 * TypicalWidthHertz) / spectrum.HzPerPoint);
+        double left = 0;
+        double signal = 0;
+        foreach (MeasuredSignal region in _signals)
+        {
+            (int first, int last) = IndexRange(region.Ppm);
+            for (int i = first; i <= last; i++)
+            {
+                double residual = spectrum.Intensity[i] - Modelled[i];
+                left += (residual * residual) - (spectrum.NoiseStandardDeviation * spectrum.NoiseStandardDeviation);
+                signal += envelope[i] * envelope[i];
+            }
+        }
+
+        return signal <= 0 ? SpectrumFit.FineMisfitShare : Math.Clamp(Math.Sqrt(Math.Max(0, left) / signal), SpectrumFit.FineMisfitShare, LargestMisfitShare);
     }
 
     /// <summary>A scale that does not depend on the structure's assignment: all signal over all expected protons.</summary>

@@ -96,6 +96,9 @@ public sealed record FitResult
     /// <summary>Whether the last stage of the fit came to rest.</summary>
     public required bool Converged { get; init; }
 
+    /// <summary>Share of the local signal that line-shape faults amount to, at which the evidence was taken.</summary>
+    public required double MisfitShare { get; init; }
+
     /// <summary>Natural logarithm of the evidence up to a constant of the spectrum: comparable between structures fitted to the same spectrum.</summary>
     public required double LogEvidence { get; init; }
 }

@@ -82,10 +82,6 @@ internal sealed class ChairBalance
     public bool? IsAxialInFirst(Atom atom, int side) =>
         _faces.IsProtonUp(atom, side) is { } isUp ? isUp == IsEven(_ring.IndexOf(atom.Index)) : null;
 
-    /// <summary>Share of molecules in which a proton is axial.</summary>
-    public double? AxialShare(Atom atom, int side) =>
-        IsAxialInFirst(atom, side) is { } isAxial ? isAxial ? FirstShare : 1 - FirstShare : null;
-
     // Saturated and in no other ring; or a ketone's carbon. Lactones and lactams are no chairs.
     private static bool IsChairAtom(PerceivedMolecule molecule, ImmutableArray<int> ring, int atom)
     {

@@ -20,7 +20,7 @@ public static class Predictor
         var perceived = new PerceivedMolecule(molecule);
         return new Expectation(
             protons,
-            [.. protons.Groups.Select(group => ShiftOf(perceived, group, SideOf(protons, group), solvent))],
+            [.. protons.Groups.Select(group => ShiftOf(perceived, group, solvent))],
             CouplingRules.Between(perceived, protons, solvent),
             HeteroCouplingRules.Of(perceived, protons));
     }
@@ -29,17 +29,11 @@ public static class Predictor
     internal static int OrdinalOf(ProtonGroup group) =>
         group.DiastereotopicPartner >= 0 && group.DiastereotopicPartner < group.Index ? 1 : 0;
 
-    private static int SideOf(ProtonGroups protons, ProtonGroup group)
-    {
-        ProtonSet set = protons.Sets.First(set => set.Group == group.Index && set.Atoms.Contains(group.Atoms[0]));
-        return set.SideAt(set.Atoms.IndexOf(group.Atoms[0]));
-    }
-
-    private static ExpectedShift ShiftOf(PerceivedMolecule molecule, ProtonGroup group, int side, string solvent)
+    private static ExpectedShift ShiftOf(PerceivedMolecule molecule, ProtonGroup group, string solvent)
     {
         int atom = group.Atoms[0];
         ShiftEstimate estimate = molecule[atom].AtomicNumber == 6
-            ? SolventEffect.Apply(molecule, atom, solvent, OnCarbon(molecule, atom, group, side))
+            ? SolventEffect.Apply(molecule, atom, solvent, OnCarbon(molecule, atom, group))
             : ExchangeableShifts.Estimate(molecule, atom, solvent);
         return new ExpectedShift(
             group.Index,
@@ -49,7 +43,7 @@ public static class Predictor
             estimate.Rows);
     }
 
-    private static ShiftEstimate OnCarbon(PerceivedMolecule molecule, int carbon, ProtonGroup group, int side)
+    private static ShiftEstimate OnCarbon(PerceivedMolecule molecule, int carbon, ProtonGroup group)
     {
         if (molecule[carbon].IsAromatic)
         {
@@ -62,28 +56,11 @@ public static class Predictor
         }
 
         ShiftEstimate estimate = SaturatedShifts.Estimate(molecule, carbon);
-        if (group.DiastereotopicPartner < 0)
-        {
-            return estimate;
-        }
-
-        if (AxialShare(molecule, carbon, side) is { } axial)
-        {
-            // The axial proton is upfield of the equatorial one, in proportion to the time that it spends there.
-            return Moved(estimate, UncertaintyModel.AxialToMeanPpm * (1 - (2 * axial)), UncertaintyModel.DiastereotopicOnChairPpm);
-        }
-
         double difference = SaturatedShifts.IsInSubstitutedRing(molecule, carbon) ? UncertaintyModel.DiastereotopicInRingPpm : UncertaintyModel.DiastereotopicPpm;
-        return Moved(estimate, 0, difference);
+        return group.DiastereotopicPartner < 0 ? estimate : estimate with
+        {
+            StandardUncertaintyPpm = Math.Sqrt(
+                Math.Pow(estimate.StandardUncertaintyPpm, 2) + Math.Pow(difference, 2)),
+        };
     }
-
-    private static double? AxialShare(PerceivedMolecule molecule, int carbon, int side) => molecule.RingsOf(carbon)
-        .Select(ring => molecule.ChairsOf(ring)?.AxialShare(molecule[carbon], side))
-        .FirstOrDefault(share => share is not null);
-
-    private static ShiftEstimate Moved(ShiftEstimate estimate, double byPpm, double standardUncertaintyPpm) => !estimate.IsCovered ? estimate : estimate with
-    {
-        ShiftPpm = estimate.ShiftPpm + byPpm,
-        StandardUncertaintyPpm = double.Hypot(estimate.StandardUncertaintyPpm, standardUncertaintyPpm),
-    };
 }

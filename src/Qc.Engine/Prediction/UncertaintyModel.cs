@@ -57,12 +57,6 @@ internal static class UncertaintyModel
     /// <summary>The same in a substituted ring, where one is axial or beside the substituent.</summary>
     public const double DiastereotopicInRingPpm = 0.35;
 
-    /// <summary>The same where the chair is known, once <see cref="AxialToMeanPpm"/> is allowed for.</summary>
-    public const double DiastereotopicOnChairPpm = 0.25;
-
-    /// <summary>How far the axial proton of a ring CH2 is upfield of the mean of both, and the equatorial one downfield (common practice: 0.5 ppm apart).</summary>
-    public const double AxialToMeanPpm = 0.25;
-
     /// <summary>A solvent for which there is no table.</summary>
     public const double UnknownSolventPpm = 0.20;
 

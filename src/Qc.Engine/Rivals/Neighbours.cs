@@ -30,6 +30,15 @@ public sealed record NeighbourOptions
     /// <summary>Most structures from edits.</summary>
     public int MostEdited { get; init; } = 200;
 
+    /// <summary>Whether structures two edits away are looked at as well as those one edit away.</summary>
+    public bool TwoEdits { get; init; } = true;
+
+    /// <summary>
+    /// What every lot is tested against: stereoisomers and structures one edit away, the mix-ups that a plant meets. The rest
+    /// belongs to the specificity of the method, which is worked out once and not with every lot.
+    /// </summary>
+    public static NeighbourOptions Nearest { get; } = new() { TwoEdits = false, MostHeavyAtomsListed = 0 };
+
     /// <summary>The complete list of isomers is added up to this many heavy atoms ...</summary>
     public int MostHeavyAtomsListed { get; init; } = 9;
 
@@ -73,7 +82,11 @@ public static class Neighbours
         AddStereoisomers(expected, found);
         var known = new KnownStructures(expected, options.Filters);
         List<Molecule> first = AddEdits([expected], RivalOrigin.OneEdit, options.MostEdited, int.MaxValue, known, found, cancellation);
-        AddEdits(first, RivalOrigin.TwoEdits, options.MostEdited - first.Count, MostTried, known, found, cancellation);
+        if (options.TwoEdits)
+        {
+            AddEdits(first, RivalOrigin.TwoEdits, options.MostEdited - first.Count, MostTried, known, found, cancellation);
+        }
+
         bool isComplete = AddList(expected, options, known, found, cancellation);
         return new RivalCandidates([.. found], isComplete);
     }

