@@ -13,6 +13,10 @@ namespace Qc.Engine.Fitting;
 public static class SpectrumFit
 {
     private const int Starts = 3;
+
+    /// <summary>Starts whose coarse costs differ by less are both refined, in units of half a squared standard deviation.</summary>
+    private const double CloseStarts = 30;
+    private const int MostRefined = 2;
     private const double NormalGapHertz = 22;
     private const int StrongMaxima = 16;
     private const double StrongInNoise = 30;
@@ -35,9 +39,7 @@ public static class SpectrumFit
         Dictionary<double, double[]> broadened =
             CoarseStages.ToDictionary(s => s.BroadeningHertz, s => Broadening.Apply(spectrum, s.BroadeningHertz));
 
-        FitSetup? bestSetup = null;
-        FitState? bestState = null;
-        double bestCost = double.PositiveInfinity;
+        var coarse = new List<(FitSetup Setup, FitState State, double Cost)>();
         foreach (StartingPlaces start in starts)
         {
             FitSetup setup = FitSetup.Build(input, signals, claims, start, width);
@@ -47,18 +49,30 @@ public static class SpectrumFit
                 state = Run(input, setup, stretches, broadened, stage, width, state, cancellation);
             }
 
-            double cost = state!.Cost + start.Cost + (AbsentGroups(start) * AbsentGroupCost);
-            if (cost < bestCost)
-            {
-                (bestSetup, bestState, bestCost) = (setup, state, cost);
-            }
+            coarse.Add((setup, state!, state!.Cost + start.Cost + (AbsentGroups(start) * AbsentGroupCost)));
         }
 
-        FitInput level = WithoutBaseline(input, signals, bestSetup!, bestState!, width);
+        coarse = [.. coarse.OrderBy(c => c.Cost)];
+        FitInput level = WithoutBaseline(input, signals, coarse[0].Setup, coarse[0].State, width);
         broadened = FineStages.ToDictionary(s => s.BroadeningHertz, s => Broadening.Apply(level.Spectrum, s.BroadeningHertz));
-        foreach (FitStage stage in FineStages)
+
+        // Broad data hardly tell two ways round a ring apart; starts that are close there are told by their sharp lines.
+        FitSetup? bestSetup = null;
+        FitState? bestState = null;
+        double bestCost = double.PositiveInfinity;
+        foreach ((FitSetup setup, FitState state, double cost) in coarse.Where(c => c.Cost < coarse[0].Cost + CloseStarts).Take(MostRefined))
         {
-            bestState = Run(level, bestSetup!, stretches, broadened, stage, width, bestState, cancellation);
+            FitState refined = state;
+            foreach (FitStage stage in FineStages)
+            {
+                refined = Run(level, setup, stretches, broadened, stage, width, refined, cancellation);
+            }
+
+            double total = refined.Cost + cost - state.Cost;
+            if (total < bestCost)
+            {
+                (bestSetup, bestState, bestCost) = (setup, refined, total);
+            }
         }
 
         level = WithoutBaseline(input, signals, bestSetup!, bestState!, width);
