@@ -20,6 +20,7 @@ internal sealed class FitReading
     private readonly FitState _state;
     private readonly LineSheet _lines;
     private readonly Interval?[] _extent;
+    private ImmutableArray<LeftOverRegion>? _leftOver;
 
     public FitReading(FitInput input, ImmutableArray<MeasuredSignal> signals, FitSetup setup, FitState state, double width)
     {
@@ -32,7 +33,6 @@ internal sealed class FitReading
         TypicalWidthHertz = width;
         _extent = Extents();
         Modelled = Render(Enumerable.Range(0, setup.Model.Amplitudes.Count));
-        LeftOver = LeftOverSearch.Find(input.Spectrum, Modelled, WidthHertz);
         (AreaPerProton, AreaPerProtonRelativeUncertainty) = Scale();
     }
 
@@ -42,7 +42,8 @@ internal sealed class FitReading
 
     public double[] Modelled { get; }
 
-    public ImmutableArray<LeftOverRegion> LeftOver { get; }
+    /// <summary>Worked out when first asked for: most readings are made for the model alone.</summary>
+    public ImmutableArray<LeftOverRegion> LeftOver => _leftOver ??= LeftOverSearch.Find(_input.Spectrum, Modelled, WidthHertz);
 
     public double AreaPerProton { get; }
 
@@ -54,22 +55,26 @@ internal sealed class FitReading
     public IEnumerable<string> KnownNames => _setup.Known.Select(k => k.Substance.Name);
 
     /// <summary>The result, its model drawn on the spectrum as processed, baseline included.</summary>
-    public FitResult ToResult(Spectrum processed) => new()
+    public FitResult ToResult(Spectrum processed)
     {
-        Groups = [.. _input.Product.Protons.Groups.Select(Group)],
-        Couplings = Couplings(),
-        Others = [.. Others()],
-        LeftOver = LeftOver,
-        AreaPerProton = AreaPerProton,
-        AreaPerProtonRelativeUncertainty = AreaPerProtonRelativeUncertainty,
-        WidthHertz = WidthHertz,
-        MeasuredWidthHertz = TypicalWidthHertz,
-        Modelled = [.. Modelled.Select((m, i) => m + processed.Intensity[i] - _input.Spectrum.Intensity[i])],
-        Baseline = [.. processed.Intensity.Zip(_input.Spectrum.Intensity, (y, level) => y - level)],
-        Converged = _state.Converged,
-        MisfitShare = MisfitShare(),
-        LogEvidence = LogEvidence(),
-    };
+        double misfitShare = MisfitShare();
+        return new FitResult
+        {
+            Groups = [.. _input.Product.Protons.Groups.Select(Group)],
+            Couplings = Couplings(),
+            Others = [.. Others()],
+            LeftOver = LeftOver,
+            AreaPerProton = AreaPerProton,
+            AreaPerProtonRelativeUncertainty = AreaPerProtonRelativeUncertainty,
+            WidthHertz = WidthHertz,
+            MeasuredWidthHertz = TypicalWidthHertz,
+            Modelled = [.. Modelled.Select((m, i) => m + processed.Intensity[i] - _input.Spectrum.Intensity[i])],
+            Baseline = [.. processed.Intensity.Zip(_input.Spectrum.Intensity, (y, level) => y - level)],
+            Converged = _state.Converged,
+            MisfitShare = misfitShare,
+            LogEvidence = LogEvidence(misfitShare),
+        };
+    }
 
     private GroupFit Group(ProtonGroup group)
     {
@@ -326,7 +331,7 @@ internal sealed class FitReading
     /// spectrum, also those that this structure leaves undrawn, so that structures are compared on the same data; each
     /// signal counts up to a limit, since one gross misfit must not hide the rest.
     /// </summary>
-    private double LogEvidence()
+    private double LogEvidence(double misfitShare)
     {
         double occam = 0;
         for (int p = 0; p < _state.ParameterUncertainties.Length; p++)
@@ -340,7 +345,7 @@ internal sealed class FitReading
             g.Lability == Lability.Fixed
             && _setup.Product.AmplitudeOf[g.Index] < 0
             && _input.Spectrum.WindowPpm.Contains(_input.Product.Shifts[g.Index].ShiftPpm));
-        return -MisfitOfSignals() - (_state.Cost - _state.DataCost) + occam - (SpectrumFit.AbsentGroupCost * absent);
+        return -MisfitOfSignals(misfitShare) - (_state.Cost - _state.DataCost) + occam - (SpectrumFit.AbsentGroupCost * absent);
     }
 
     /// <summary>
@@ -348,11 +353,11 @@ internal sealed class FitReading
     /// adds, one half a point, is taken off before the limit: else a long signal would reach it however well it is drawn, and
     /// drawing it would count for nothing.
     /// </summary>
-    private double MisfitOfSignals()
+    private double MisfitOfSignals(double misfitShare)
     {
         Spectrum spectrum = _input.Spectrum;
         FitGrid whole = FitGrid.Lay(
-            spectrum, spectrum.Intensity, [spectrum.WindowPpm], TypicalWidthHertz, spectrum.NoiseStandardDeviation, MisfitShare());
+            spectrum, spectrum.Intensity, [spectrum.WindowPpm], TypicalWidthHertz, spectrum.NoiseStandardDeviation, misfitShare);
         double areaPerProton = AreaOfExpectedProton();
         double sum = 0;
         foreach (MeasuredSignal signal in _signals)

@@ -181,7 +181,7 @@ internal sealed class ForeignClaims
             for (int s = 0; s < signals.Length; s++)
             {
                 double z = (signals[s].CentroidPpm - shift.ShiftPpm) / Math.Max(0.5, shift.StandardUncertaintyPpm);
-                if (signals[s].StrongMaxima <= 3)
+                if (signals[s].StrongMaxima.Length <= 3)
                 {
                     _unassignedCost[s] = Math.Min(_unassignedCost[s], GroupAssignment.OwnedElsewhereCost + (0.5 * z * z));
                 }

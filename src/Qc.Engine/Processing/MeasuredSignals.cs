@@ -23,25 +23,24 @@ internal sealed record MeasuredSignal(
     public double SpanHertz => Maxima[0].Hertz - Maxima[^1].Hertz;
 
     /// <summary>
-    /// The same for the maxima above 4 % of the highest: without 13C satellites (0.55 %), spinning side bands and small
-    /// signals in the feet.
+    /// Maxima above 4 % of the highest: without 13C satellites (0.55 %), spinning side bands and small signals in the feet.
     /// </summary>
+    public ImmutableArray<Maximum> StrongMaxima
+    {
+        get
+        {
+            double least = 0.04 * Maxima.Max(m => m.Height);
+            return [.. Maxima.Where(m => m.Height >= least)];
+        }
+    }
+
+    /// <summary>Distance between the outermost strong maxima in Hz.</summary>
     public double StrongSpanHertz
     {
         get
         {
-            double least = 0.04 * Maxima.Max(m => m.Height);
-            return Maxima.First(m => m.Height >= least).Hertz - Maxima.Last(m => m.Height >= least).Hertz;
-        }
-    }
-
-    /// <summary>Number of maxima above 4 % of the highest.</summary>
-    public int StrongMaxima
-    {
-        get
-        {
-            double least = 0.04 * Maxima.Max(m => m.Height);
-            return Maxima.Count(m => m.Height >= least);
+            ImmutableArray<Maximum> strong = StrongMaxima;
+            return strong[0].Hertz - strong[^1].Hertz;
         }
     }
 }
